@@ -1,0 +1,248 @@
+// Package diagnose says what an evaluation means: whose fault a deviation is,
+// how sure that is, and what to do about it. It adds findings to the result and
+// changes no number of it.
+package diagnose
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"rungproof/calib"
+	"rungproof/calib/plan"
+	"rungproof/calib/quantity"
+)
+
+// Kinds of findings.
+const (
+	NotSeparable   = "not separable"
+	Offset         = "offset"
+	Series         = "series resistance"
+	Gain           = "gain"
+	RangeGain      = "gain by range"
+	Misfit         = "misfit"
+	Scatter        = "scatter"
+	BeyondScale    = "beyond full scale"
+	Flagged        = "flagged reading"
+	NoReading      = "no reading"
+	StandardLapsed = "standard past due"
+)
+
+// level is the probability below which chance is not taken for the cause.
+const level = 0.01
+
+// Findings are what should be known about an evaluation, weightiest first. A
+// parameter counts as found where it exceeds its expanded uncertainty.
+func Findings(e *calib.Evaluation) []calib.Finding {
+	var out []calib.Finding
+	for _, find := range []func(*calib.Evaluation) []calib.Finding{
+		notSeparable, rangeGain, gain, offset, series, scatter, misfit, lists, lapsed,
+	} {
+		out = append(out, find(e)...)
+	}
+	return append(out, calib.Cautions(e.Plan)...)
+}
+
+func one(kind, do, format string, args ...any) []calib.Finding {
+	return []calib.Finding{{Kind: kind, Text: fmt.Sprintf(format, args...), Do: do}}
+}
+
+// found is a parameter's size with U where it exceeds U.
+func found(e *calib.Evaluation, x calib.Estimate, from float64) bool {
+	return x.Known && math.Abs(x.Value-from) > e.Result.CoverageFactor*x.U
+}
+
+func size(e *calib.Evaluation, x calib.Estimate) string {
+	U := e.Result.CoverageFactor * x.U
+	switch x.Unit {
+	case "1":
+		return quantity.SharePlusMinus(x.Value, U)
+	case "ohm":
+		return quantity.PlusMinus(x.Value, U, "Ω")
+	}
+	return quantity.PlusMinus(x.Value, U, x.Unit)
+}
+
+// seriesArm is the arm that the unknown series resistance is in.
+func seriesArm(p *plan.Plan) string {
+	if p.Fit.SeriesArm >= 0 {
+		return p.Arms[p.Fit.SeriesArm].Name
+	}
+	name := p.Arms[p.Steps[0].Tap].Name
+	for _, s := range p.Steps {
+		if p.Arms[s.Tap].Name != name {
+			return "the tapped arm"
+		}
+	}
+	return name
+}
+
+func notSeparable(e *calib.Evaluation) []calib.Finding {
+	f := &e.Result.Fit
+	if f.Separable || f.Intercept == nil {
+		return nil
+	}
+	text := "these readings cannot tell an offset of the detector from a series resistance of the bench"
+	if f.Intercept.Known && f.AsSeries.Known {
+		text += fmt.Sprintf(": together they are worth %s as an offset, or %s as a resistance in series with %s",
+			size(e, *f.Intercept), size(e, *f.AsSeries), seriesArm(e.Plan))
+	}
+	text += "."
+	if c := e.Result.Condition; c != nil {
+		text += fmt.Sprintf(" All steps pass if the unknown series resistance is between %s and %s.", ohms(float64(c.From)), ohms(float64(c.To)))
+	} else {
+		text += " No series resistance makes all steps pass."
+	}
+	return one(NotSeparable, parting(calib.Part(e.Plan)), "%s", text)
+}
+
+func ohms(r float64) string {
+	if math.IsInf(r, 0) {
+		return "any"
+	}
+	return quantity.Format(r, 3, "Ω")
+}
+
+// parting is the advice for telling the two apart.
+func parting(p *calib.Parting) string {
+	if p == nil {
+		return "add steps at another amplitude, or with the source off."
+	}
+	with := p.Change
+	if p.Amplitude != "" {
+		with += ", " + p.Amplitude
+	}
+	return fmt.Sprintf("take step %s once more with %s: the cheapest reading that tells them apart.", p.Step, with)
+}
+
+func rangeGain(e *calib.Evaluation) []calib.Finding {
+	g := e.Result.ByRange
+	if !(float64(g.PCommon) < level) || len(g.Gain) < 2 {
+		return nil
+	}
+	odd := oddOnes(e, g.Gain)
+	whose := make([]string, len(odd))
+	for i, k := range odd {
+		kg := g.Gain[k]
+		whose[i] = fmt.Sprintf("the %s range reads %s off", quantity.Format(kg.Range/e.Plan.Detector.ToRMS, 3, "V"),
+			quantity.SharePlusMinus(kg.Value-1, e.Result.CoverageFactor*kg.U))
+	}
+	return one(RangeGain, "have that range adjusted or repaired; the others are judged without its error.",
+		"one gain for all ranges does not fit (p = %s): %s. It is the detector's.", probability(float64(g.PCommon)), strings.Join(whose, ", "))
+}
+
+// oddOnes are the ranges whose gain differs from the weighted median of all by
+// more than the random part of its expanded uncertainty, or the farthest one.
+func oddOnes(e *calib.Evaluation, gains []calib.KeyGain) []int {
+	middle := weightedMedian(gains)
+	var odd []int
+	far, farthest := -1, 0.0
+	for i, g := range gains {
+		if !g.Known {
+			continue
+		}
+		t := math.Abs(g.Value-middle) / g.URandom
+		if t > farthest {
+			far, farthest = i, t
+		}
+		if t > 3 {
+			odd = append(odd, i)
+		}
+	}
+	if len(odd) == 0 && far >= 0 {
+		odd = []int{far}
+	}
+	return odd
+}
+
+func gain(e *calib.Evaluation) []calib.Finding {
+	g := e.Result.Fit.Gain
+	if !found(e, g, 1) {
+		return nil
+	}
+	deviation := g
+	deviation.Value--
+	do := "correct the readings by it, or have the detector adjusted."
+	if name := convention(g.Value); name != "" {
+		do = "check the amplitude's convention first: this ratio is " + name + "."
+	}
+	return one(Gain, do, "the gain is off by %s. It is the detector's, as far as the generator's amplitude and the ladder are as the plan states them.", size(e, deviation))
+}
+
+// convention names the slip of amplitude convention that a gain is near to.
+func convention(g float64) string {
+	for _, c := range []struct {
+		ratio float64
+		name  string
+	}{
+		{2 * math.Sqrt2, "near 2√2: peak-to-peak taken for rms"},
+		{1 / (2 * math.Sqrt2), "near 1/(2√2): rms taken for peak-to-peak"},
+		{math.Sqrt2, "near √2: peak taken for rms"},
+		{1 / math.Sqrt2, "near 1/√2: rms taken for peak"},
+		{2, "near 2: peak-to-peak taken for peak, or open circuit for matched load"},
+		{0.5, "near ½: peak taken for peak-to-peak, or matched load for open circuit"},
+	} {
+		if math.Abs(g/c.ratio-1) < 0.05 {
+			return c.name
+		}
+	}
+	return ""
+}
+
+func offset(e *calib.Evaluation) []calib.Finding {
+	var out []calib.Finding
+	if o := e.Result.Fit.Offset; found(e, o, 0) {
+		out = one(Offset, "zero the detector's output with the input shorted, or correct the readings by it.",
+			"the detector adds %s to every reading, whatever the signal: the same at every amplitude and at either reference phase. It is the detector's.", size(e, o))
+	}
+	if y := e.Result.Fit.OffsetQuadrature; y != nil && found(e, *y, 0) {
+		out = append(out, one(Offset, "zero the detector's quadrature output.", "the detector adds %s to every quadrature reading.", size(e, *y))...)
+	}
+	return out
+}
+
+func series(e *calib.Evaluation) []calib.Finding {
+	r := e.Result.Fit.SeriesResistance
+	from := 0.0
+	if x := e.Plan.Fit.SeriesExpected; x != nil {
+		from = x.X
+	}
+	if !found(e, r, from) {
+		return nil
+	}
+	text := "there is %s in series with %s beyond the wiring that the plan states: it grows with the current and stays with the ladder. It is the bench's, and is not counted against the detector."
+	if r.Value < 0 {
+		text = "there is %s in series with %s against the wiring that the plan states: less than stated. It is the bench's, and is not counted against the detector."
+	}
+	return one(Series, "look for a lead or contact inside the detector's taps; shorten it, clean it, or state it as a [[wire]].", text, size(e, r), seriesArm(e.Plan))
+}
+
+func scatter(e *calib.Evaluation) []calib.Finding {
+	r := e.Result.Repeatability
+	if !(float64(r.P) < level) {
+		return nil
+	}
+	return one(Scatter, "wait longer between readings, look for interference, earth loops and loose contacts. "+EarthCaution,
+		"repeated readings scatter %.1f times as much as the plan's noise, stability and resolution predict (p = %s): interference, an earth loop, or a filter that has not settled.",
+		float64(r.Ratio), probability(float64(r.P)))
+}
+
+// EarthCaution goes with every suspicion of an earth loop.
+const EarthCaution = "Never lift a protective earth to break an earth loop: use a floating or differential input, an isolating transformer made for it, or battery equipment, by your local codes and licensed practice."
+
+func misfit(e *calib.Evaluation) []calib.Finding {
+	f := &e.Result.Fit
+	p := float64(f.P)
+	if g := e.Result.ByRange; g.Used || !(p < level) {
+		return nil
+	}
+	worst, at := 0.0, ""
+	for _, s := range e.Result.Steps {
+		if z := math.Abs(float64(s.Standardised)); z > worst {
+			worst, at = z, s.ID
+		}
+	}
+	return one(Misfit, "look at that step's settings first, then at the uncertainties that the plan states.",
+		"the readings do not fit the model as well as their uncertainties say (χ² = %.4g with %d degrees of freedom, p = %s); the farthest is step %s.",
+		float64(f.ChiSquared), f.DOF, probability(p), at)
+}

@@ -1,0 +1,230 @@
+package calib
+
+import (
+	"math"
+	"math/cmplx"
+
+	"gonum.org/v1/gonum/mat"
+	"gonum.org/v1/gonum/stat/distuv"
+
+	"rungproof/calib/fit"
+	"rungproof/calib/plan"
+)
+
+// What one gain stands for.
+const (
+	gainCommon       = "common"
+	gainPerRange     = "per range"
+	gainPerFrequency = "per frequency"
+)
+
+// held says which of the two parameters that look alike is held at zero.
+type held int
+
+const (
+	nothing held = iota
+	seriesHeld
+	offsetHeld
+)
+
+// inseparable is the largest growth of the offset's standard uncertainty, by
+// leaving the series resistance free, at which the two count as told apart.
+const inseparable = 20
+
+// estimate is one fit of the model to the readings.
+type estimate struct {
+	layout *layout
+	result *fit.Result
+	prior  int   // index of the prior of the series resistance among the priors, or -1
+	keys   []int // what each gain stands for: an index of range or of frequency; nil for the common one
+	v      parameters
+}
+
+// arrange lays the parameters out: gains, offset, series resistance, phases, inputs.
+func (m *model) arrange(gain string, h held) (*layout, []int) {
+	w := &layout{gain: make([]int, len(m.obs)), offset: -1, offsetY: -1, series: -1, phase: make([]int, len(m.plan.Frequencies))}
+	var keys []int
+	next := func() int { w.n++; return w.n - 1 }
+	of := map[int]int{}
+	for i := range m.obs {
+		if m.obs[i].left {
+			w.gain[i] = -1
+			continue
+		}
+		key := 0
+		switch gain {
+		case gainPerRange:
+			key = m.obs[i].rng
+		case gainPerFrequency:
+			key = frequencyIndex(m.plan, m.plan.Steps[m.obs[i].step].Frequency)
+		}
+		if _, known := of[key]; !known {
+			of[key] = next()
+			keys = append(keys, key)
+		}
+		w.gain[i] = of[key]
+	}
+	w.gains = w.n
+	if h != offsetHeld {
+		w.offset = next()
+		if m.axes == 2 {
+			w.offsetY = next()
+		}
+	}
+	if h != seriesHeld {
+		w.series = next()
+	}
+	used := m.frequenciesRead()
+	for i := range w.phase {
+		w.phase[i] = -1
+		if m.axes == 2 && used[i] {
+			w.phase[i] = next()
+		}
+	}
+	w.inputs = w.n
+	w.n += len(m.forward.inputs)
+	return w, keys
+}
+
+// frequenciesRead tells at which frequencies the fit has readings of a signal:
+// without one, a phase means nothing.
+func (m *model) frequenciesRead() []bool {
+	used := make([]bool, len(m.plan.Frequencies))
+	for i := range m.obs {
+		if d := &m.forward.drops[m.forward.of[m.obs[i].step]]; !m.obs[i].left && d.stated > 0 {
+			used[d.frequency] = true
+		}
+	}
+	return used
+}
+
+// estimate fits the model, with one gain for all, one a range or one a frequency.
+func (m *model) estimate(gain string, h held) (*estimate, error) {
+	w, keys := m.arrange(gain, h)
+	e := &estimate{layout: w, keys: keys, prior: -1}
+	problem := fit.Problem{Start: m.start(w)}
+	for i := range m.obs {
+		if o := &m.obs[i]; !o.left {
+			problem.Sigma = append(problem.Sigma, o.along)
+			if m.axes == 2 {
+				problem.Sigma = append(problem.Sigma, o.across)
+			}
+		}
+	}
+	problem.N = len(problem.Sigma)
+	for i, in := range m.forward.inputs {
+		problem.Priors = append(problem.Priors, fit.Prior{Param: w.inputs + i, Value: in.Value, U: in.U})
+	}
+	if x := m.plan.Fit.SeriesExpected; x != nil && w.series >= 0 && x.U() > 0 {
+		e.prior = len(problem.Priors)
+		problem.Priors = append(problem.Priors, fit.Prior{Param: w.series, Value: x.X, U: x.U()})
+	}
+	problem.Residuals = func(p, r []float64, jac *mat.Dense) { m.residuals(w, p, r, jac) }
+	// Two parameters that look alike can keep the fit from settling; its
+	// covariance says so all the same, and the caller then holds one of them.
+	var err error
+	if e.result, err = fit.Solve(problem); err != nil && (e.result == nil || e.separable()) {
+		return nil, err
+	}
+	e.v = w.at(e.result.P, m.forward.stated())
+	return e, nil
+}
+
+// start gives each gain the ratio of reading to drop that the readings have as
+// they stand, and each phase its direction; everything else starts at its stated value.
+func (m *model) start(w *layout) []float64 {
+	p := make([]float64, w.n)
+	copy(p[w.inputs:], m.forward.stated())
+	m.forward.compute(m.forward.stated(), 0)
+	turned := make([]complex128, len(w.phase)) // by frequency: sum of reading × expected phasor*
+	read, drop := make([]float64, w.gains), make([]float64, w.gains)
+	var r row
+	v := (&layout{gain: w.gain, offset: -1, offsetY: -1, series: -1, phase: w.phase, inputs: -1}).at(p, m.forward.stated())
+	for i := range m.obs {
+		o := &m.obs[i]
+		if o.left {
+			continue
+		}
+		p[w.gain[i]] = 1
+		m.predict(i, v, &r)
+		s := o.mean * r.turn
+		weight := 1 / (o.along * o.along)
+		drop[w.gain[i]] += real(r.byGain) * real(r.byGain) * weight
+		if m.axes == 2 {
+			turned[m.forward.drops[m.forward.of[o.step]].frequency] += s * r.byGain
+			read[w.gain[i]] += cmplx.Abs(s) * real(r.byGain) * weight
+		} else {
+			read[w.gain[i]] += real(s) * real(r.byGain) * weight
+		}
+	}
+	for k := range read {
+		p[k] = 1
+		if drop[k] > 0 && read[k] != 0 {
+			p[k] = read[k] / drop[k]
+		}
+	}
+	for f, k := range w.phase {
+		if k >= 0 {
+			p[k] = cmplx.Phase(turned[f])
+		}
+	}
+	return p
+}
+
+// separable tells whether the readings part the offset from the series
+// resistance: leaving r free makes u(o) at most 20 times what it is with r held,
+// 1/√(1 − ρ²) ≤ 20. A test of rank would not do: the ladder is slightly curved,
+// so the two columns are never exactly equal.
+func (e *estimate) separable() bool {
+	r := e.layout.series
+	for _, o := range []int{e.layout.offset, e.layout.offsetY} {
+		if o < 0 || r < 0 {
+			continue
+		}
+		if !e.result.Determined(o) || !e.result.Determined(r) {
+			return false
+		}
+		c := e.result.Cov
+		rho := c.At(o, r) / math.Sqrt(c.At(o, o)*c.At(r, r))
+		if 1-rho*rho < 1.0/(inseparable*inseparable) {
+			return false
+		}
+	}
+	return true
+}
+
+// commonGain is the probability that chance alone lowers χ² as much as it falls
+// when each key has its own gain (likelihood ratio; χ² with gains − 1 degrees of
+// freedom). NaN where there is nothing to compare.
+func commonGain(common, several *estimate) float64 {
+	extra := several.result.Rank - common.result.Rank
+	if extra <= 0 {
+		return math.NaN()
+	}
+	fall := math.Max(0, common.result.ChiSquared-several.result.ChiSquared)
+	return distuv.ChiSquared{K: float64(extra)}.Survival(fall)
+}
+
+// value is a parameter with its standard uncertainty and the part of it that the readings bring.
+func (e *estimate) value(k int, unit string) Estimate {
+	if k < 0 || !e.result.Determined(k) {
+		return Estimate{Unit: unit}
+	}
+	v, u, ur := e.result.P[k], math.Sqrt(e.result.Cov.At(k, k)), math.Sqrt(math.Max(0, e.result.CovObserved.At(k, k)))
+	return Estimate{Value: v, U: u, URandom: ur, Unit: unit, Known: true}
+}
+
+// correlation of two parameters; NaN where either is not determined.
+func (e *estimate) correlation(i, j int) float64 {
+	if i < 0 || j < 0 || !e.result.Determined(i) || !e.result.Determined(j) {
+		return math.NaN()
+	}
+	return e.result.Cov.At(i, j) / math.Sqrt(e.result.Cov.At(i, i)*e.result.Cov.At(j, j))
+}
+
+func offsetUnit(p *plan.Plan) string {
+	if p.Fit.OffsetPerRange {
+		return "1"
+	}
+	return "V"
+}

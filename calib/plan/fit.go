@@ -1,0 +1,90 @@
+package plan
+
+import (
+	"rungproof/calib/quantity"
+)
+
+// fit reads what is estimated; it comes after the blocks, as the tapped arm may have to hold the series resistance.
+func (d *decoder) fit(top *table) {
+	f := &d.plan.Fit
+	t := d.table(top.get("fit"))
+	f.SeriesArm = -1
+	if n := t.get("series_resistance_in"); n != nil {
+		f.SeriesIn = d.text(n)
+		f.SeriesArm = d.refer(n, "arm", d.bench.arms)
+		if f.SeriesArm >= 0 && d.plan.Arms[f.SeriesArm].Place == Tap {
+			d.fault(n, "%q is a joint without an element; name the series or shunt arm that the resistance is in", f.SeriesIn)
+		}
+	} else {
+		d.checkTapsHaveElements()
+	}
+	f.OffsetPerRange = d.choice(t.get("offset"), "volts", "share of range") == "share of range"
+	f.Gain = d.choice(t.get("gain"), "common", "per range", "per frequency")
+	if n := t.get("expect"); n != nil {
+		f.SeriesExpected = d.expected(d.table(n))
+	}
+	t.done()
+}
+
+// checkTapsHaveElements reports the first joint that is tapped where the tapped arm is to hold the series resistance.
+func (d *decoder) checkTapsHaveElements() {
+	for _, b := range d.blocksRead {
+		for i, arm := range b.taps {
+			a := &d.plan.Arms[arm]
+			if a.Place != Tap {
+				continue
+			}
+			d.fault(b.tapNodes[i], "%q is a joint without an element, so the unknown series resistance cannot be in the tapped arm", a.Name)
+			d.hint("say which arm it is in: series_resistance_in = %q in [fit]", d.lastShunt())
+			return
+		}
+	}
+}
+
+// lastShunt is the name of the last shunt arm, or "".
+func (d *decoder) lastShunt() string {
+	if i := d.plan.lastShunt(); i >= 0 {
+		return d.plan.Arms[i].Name
+	}
+	return ""
+}
+
+// expected reads prior knowledge.
+func (d *decoder) expected(t *table) *Quantity {
+	defer t.done()
+	n := t.need("series_resistance", `"0.1(1) Ω"`)
+	if n == nil {
+		return nil
+	}
+	before := len(d.faults)
+	q := d.quantity(n, quantity.Resistance, notNegative, 0)
+	if !q.Stated() && len(d.faults) == before {
+		d.fault(n, "%s has no uncertainty, without which it is no knowledge; write it like \"0.1(1) Ω\"", n.what())
+	}
+	return &q
+}
+
+// decision reads the rule of the verdict.
+func (d *decoder) decision(top *table) {
+	x := &d.plan.Decision
+	t := d.table(top.get("decision"))
+	x.Rule = d.choice(t.get("rule"), "guarded", "simple")
+	n := t.get("guard")
+	x.Guard = d.number(n, 1, "a factor on U, 0 or more and without quotes", func(x float64) bool { return x >= 0 })
+	if x.Rule == "simple" {
+		x.Guard = 0
+		if n != nil {
+			d.fault(n, "the simple rule has no guard band; leave guard out or use rule = \"guarded\"")
+		}
+	}
+	x.Coverage = 0.95
+	if n := t.get("coverage"); n != nil {
+		v, ok := d.value(n, quantity.Ratio, anySign)
+		if ok && !(v.X > 0 && v.X < 1) {
+			d.fault(n, "%q, want a probability between 0 %% and 100 %%, like \"95 %%\"", n.text)
+		} else if ok {
+			x.Coverage = v.X
+		}
+	}
+	t.done()
+}

@@ -1,0 +1,33 @@
+package calib
+
+import (
+	"fmt"
+	"strings"
+
+	"rungproof/calib/quantity"
+)
+
+// hertz is a frequency as people write it, with no more digits than it has.
+func hertz(f float64) string {
+	scale, unit := quantity.Prefix(f, "Hz")
+	return fmt.Sprintf("%.6g %s", f/scale, unit)
+}
+
+func plural(n int) string {
+	if n == 1 {
+		return ""
+	}
+	return "s"
+}
+
+// counted is "1 reading" or "3 readings".
+func counted(n int, what string) string { return fmt.Sprintf("%d %s%s", n, what, plural(n)) }
+
+// List names the first few of many.
+func List(names []string) string {
+	const shown = 8
+	if len(names) <= shown {
+		return strings.Join(names, ", ")
+	}
+	return fmt.Sprintf("%s and %d more", strings.Join(names[:shown], ", "), len(names)-shown)
+}
