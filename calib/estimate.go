@@ -102,7 +102,8 @@ func (m *model) frequenciesRead() []bool {
 func (m *model) estimate(gain string, h held) (*estimate, error) {
 	w, keys := m.arrange(gain, h)
 	e := &estimate{layout: w, keys: keys, prior: -1}
-	problem := fit.Problem{Start: m.start(w)}
+	start, turns := m.start(w)
+	problem := fit.Problem{Start: start}
 	for i := range m.obs {
 		if o := &m.obs[i]; !o.left {
 			problem.Sigma = append(problem.Sigma, o.along)
@@ -119,7 +120,7 @@ func (m *model) estimate(gain string, h held) (*estimate, error) {
 		e.prior = len(problem.Priors)
 		problem.Priors = append(problem.Priors, fit.Prior{Param: w.series, Value: x.X, U: x.U()})
 	}
-	problem.Residuals = func(p, r []float64, jac *mat.Dense) { m.residuals(w, p, r, jac) }
+	problem.Residuals = func(p, r []float64, jac *mat.Dense) { m.residuals(w, turns, p, r, jac) }
 	// Two parameters that look alike can keep the fit from settling; its
 	// covariance says so all the same, and the caller then holds one of them.
 	var err error
@@ -131,8 +132,9 @@ func (m *model) estimate(gain string, h held) (*estimate, error) {
 }
 
 // start gives each gain the ratio of reading to drop that the readings have as
-// they stand, and each phase its direction; everything else starts at its stated value.
-func (m *model) start(w *layout) []float64 {
+// they stand, and each phase its direction; everything else starts at its stated
+// value. turns are the directions of the expected phasors there.
+func (m *model) start(w *layout) (start []float64, turns []complex128) {
 	p := make([]float64, w.n)
 	copy(p[w.inputs:], m.forward.stated())
 	m.forward.compute(m.forward.stated(), 0)
@@ -168,7 +170,13 @@ func (m *model) start(w *layout) []float64 {
 			p[k] = cmplx.Phase(turned[f])
 		}
 	}
-	return p
+	if m.axes == 2 {
+		for i := range m.obs {
+			m.predict(i, v, &r)
+			turns = append(turns, r.turn)
+		}
+	}
+	return p, turns
 }
 
 // separable tells whether the readings part the offset from the series

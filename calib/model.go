@@ -41,7 +41,8 @@ type parameters struct {
 	p     []float64
 	where *layout
 
-	noiseless bool // a magnitude without the noise that makes it read high
+	noiseless bool         // a magnitude without the noise that makes it read high
+	turns     []complex128 // two-phase: what each reading is multiplied by; nil: by the expected phasor's direction at v
 }
 
 func (w *layout) at(p []float64, stated []float64) parameters {
@@ -98,7 +99,9 @@ func (m *model) predict(i int, v parameters, out *row) {
 	switch m.plan.Detector.Reads {
 	case plan.TwoPhase:
 		turned := cmplx.Rect(1, v.get(v.where.phase[d.frequency], 0)-s.Phase)
-		out.turn = cmplx.Conj(unit * turned)
+		if out.turn = cmplx.Conj(unit * turned); v.turns != nil {
+			out.turn = v.turns[i]
+		}
 		k := turned * out.turn
 		out.value = complex(g, 0)*d.V*k + complex(offset, v.get(v.where.offsetY, 0)*full)*out.turn
 		out.byGain = d.V * k
@@ -179,8 +182,10 @@ func (m *model) throughMeter(o *observation, v parameters, out *row) {
 
 // residuals fills observed − predicted and ∂predicted/∂p for all observations of
 // the fit: one row each, or two (along and across) for two-phase readings.
-func (m *model) residuals(w *layout, p, res []float64, jac *mat.Dense) {
+// The axes stay where turns has them, so that χ² is one function of p.
+func (m *model) residuals(w *layout, turns []complex128, p, res []float64, jac *mat.Dense) {
 	v := w.at(p, m.forward.stated())
+	v.turns = turns
 	m.forward.compute(v.nu, v.r)
 	var r row
 	k := 0

@@ -139,3 +139,9 @@ func (x *Expectation) loading(p *plan.Plan) []Finding {
 			quantity.Format(by, 2, "V"), at, 100*worst),
 		Do: "state the input's resistance and capacitance with their uncertainties, or set the tapped arm lower."}}
 }
+
+// Warnings are what a plan does badly: ranges overloaded or under-used, a
+// detector that loads the ladder.
+func (x *Expectation) Warnings(p *plan.Plan) []Finding {
+	return append(x.ranges(p), x.loading(p)...)
+}

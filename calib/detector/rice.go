@@ -12,6 +12,7 @@ import "math"
 // The mean is even in s. It exceeds |s| by σ²/2|s| where the signal is strong,
 // and is σ·√(π/2) where there is none.
 func RiceMean(s, sigma float64) (mean, slope float64) {
+	checkDeviation(sigma)
 	if sigma == 0 {
 		if s < 0 {
 			return -s, -1
@@ -27,34 +28,28 @@ func RiceMean(s, sigma float64) (mean, slope float64) {
 	return sigma * root * ((1+2*x)*i0 + 2*x*i1), s / (2 * sigma) * root * (i0 + i1)
 }
 
-// scaledBessel is e^−x·I0(x) and e^−x·I1(x) for x ≥ 0: the power series
-// (Abramowitz and Stegun 9.6.10) below 30, the asymptotic one (9.7.1) above.
-func scaledBessel(x float64) (i0, i1 float64) {
-	if x < 30 {
-		q, t0, t1 := x*x/4, 1.0, x/2
-		for k := 1.0; ; k++ {
-			i0 += t0
-			i1 += t1
-			if t0 < 1e-17*i0 {
-				break
-			}
-			t0 *= q / (k * k)
-			t1 *= q / (k * (k + 1))
-		}
-		e := math.Exp(-x)
-		return i0 * e, i1 * e
+// RiceVariance is the variance of |s + noise|, in V². The mean square being
+// s² + 2σ², it is what the mean's square leaves of that: σ²·(2 − π/2) without a
+// signal, σ² with a strong one.
+func RiceVariance(s, sigma float64) float64 {
+	checkDeviation(sigma)
+	if sigma == 0 {
+		return 0
 	}
-	asymptotic := func(mu float64) float64 {
-		sum, term := 1.0, 1.0
-		for k := 1.0; k < 30; k++ {
-			next := -term * (mu - (2*k-1)*(2*k-1)) / (k * 8 * x)
-			if math.Abs(next) >= math.Abs(term) || math.Abs(next) < 1e-17 {
-				break
-			}
-			term = next
-			sum += term
-		}
-		return sum / math.Sqrt(2*math.Pi*x)
+	a := math.Abs(s) / sigma
+	if a < 30 {
+		mean, _ := RiceMean(a, 1)
+		return sigma * sigma * (a*a + 2 - mean*mean)
 	}
-	return asymptotic(0), asymptotic(4)
+	// The difference loses its digits. With the mean's asymptotic series
+	// a·(1 + 1/2a² + 1/8a⁴ + 3/16a⁶ + 75/128a⁸ + 735/256a¹⁰ + …), which is that of
+	// the confluent hypergeometric function (Abramowitz and Stegun 13.5.1):
+	q := 1 / (a * a)
+	return sigma * sigma * (1 - q*(1.0/2+q*(1.0/2+q*(11.0/8+q*51.0/8))))
+}
+
+func checkDeviation(sigma float64) {
+	if sigma < 0 {
+		panic("detector: a standard deviation is not negative")
+	}
 }

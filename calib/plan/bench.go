@@ -78,6 +78,9 @@ func (d *decoder) sharedErrors(top *table) {
 		return
 	}
 	for _, name := range slices.Sorted(maps.Keys(n.fields)) {
+		if !d.isUncertainty(n.fields[name]) {
+			continue
+		}
 		t := d.table(n.fields[name])
 		if t.node.fields["shares"] != nil {
 			d.fault(t.get("shares"), "an error that others share shares none itself")

@@ -12,7 +12,7 @@ import (
 	"rungproof/circuit"
 )
 
-// close compares numbers that a conversion may have rounded.
+// nearly compares numbers that a conversion may have rounded.
 var nearly = cmpopts.EquateApprox(1e-12, 0)
 
 func check(t *testing.T, what string, got, want any) {

@@ -1,6 +1,8 @@
 package plan
 
 import (
+	"github.com/pelletier/go-toml/v2/unstable"
+
 	"rungproof/calib/quantity"
 )
 
@@ -54,7 +56,7 @@ func (d *decoder) generator(top *table) {
 // relative reads a table that holds a relative uncertainty only.
 func (t *table) relative(key string) Uncertainty {
 	n := t.get(key)
-	if n == nil {
+	if n == nil || !t.isUncertainty(n) {
 		return unstated
 	}
 	inner := t.table(n)
@@ -62,6 +64,15 @@ func (t *table) relative(key string) Uncertainty {
 	inner.done()
 	t.checkDOF(n, u)
 	return u
+}
+
+// isUncertainty reports a share that does not say what it is.
+func (d *decoder) isUncertainty(n *node) bool {
+	if n.kind == unstable.String {
+		d.fault(n, "%q does not say which uncertainty it is; write { tolerance = %q }, or u or U in place of tolerance", n.text, n.text)
+		return false
+	}
+	return d.isTable(n)
 }
 
 // setting reads one amplitude that was measured.

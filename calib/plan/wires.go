@@ -139,7 +139,7 @@ func (d *decoder) capacitanceOf(t *table, w *Wire, length Quantity) {
 		w.Capacitance = d.quantity(inAll, quantity.Capacitance, notNegative, 0)
 	}
 	for _, n := range []*node{inAll, perLength} {
-		if n != nil && w.In != InSense {
+		if n != nil && w.In != InSense && w.In != "" {
 			d.fault(n, "only a sense cable's capacitance counts, as it lies across the detector's input; this wire is in %q", w.In)
 			return
 		}

@@ -1,33 +1,33 @@
 package quantity
 
 import (
-	"fmt"
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 )
 
+// unprefixed are the units that take no SI prefix on output. A unit of "1" is not written.
+var unprefixed = []string{"", "1", "%", "‰", "ppm", "°C", "°", "deg", "rad", "1/K"}
+
 // Prefix chooses the SI prefix that leaves one to three digits before the point.
 // x is scale times the number to write before the prefixed unit.
 func Prefix(x float64, unit string) (scale float64, prefixed string) {
-	if unit == "1" || unit == "" || unit == "°C" || unit == "rad" || unit == "1/K" {
-		return 1, strings.TrimPrefix(unit, "1")
-	}
 	x = math.Abs(x)
-	if x == 0 || math.IsInf(x, 0) || math.IsNaN(x) {
+	switch {
+	case slices.Contains(unprefixed, unit):
+		return 1, strings.TrimPrefix(unit, "1")
+	case x == 0 || math.IsInf(x, 0) || math.IsNaN(x):
 		return 1, unit
+	case unit == "m²": // of a conductor; the prefix is raised to the power with its unit
+		return 1e-6, "mm²"
 	}
-	step := math.Floor(math.Log10(x*(1+1e-12)) / 3)
+	// Beyond f and T the number before the unit is longer instead.
+	step := min(max(math.Floor(math.Log10(x*(1+1e-12))/3), -5), 4)
 	for _, p := range prefixes {
 		if math.Round(math.Log10(p.scale)/3) == step {
 			return p.scale, p.text + unit
 		}
-	}
-	switch {
-	case step < -5:
-		return 1e-15, "f" + unit
-	case step > 4:
-		return 1e12, "T" + unit
 	}
 	return 1, unit
 }
@@ -41,76 +41,55 @@ func behind(unit string) string {
 }
 
 // Format writes x with so many significant digits: "70.71 mV". A unit of "1" is
-// not written.
+// not written, and a zero is one digit.
 func Format(x float64, digits int, unit string) string {
-	if math.IsNaN(x) || math.IsInf(x, 0) {
-		return strings.TrimSpace(fmt.Sprint(x, " ", strings.TrimPrefix(unit, "1")))
+	if !finite(x) {
+		_, unit = Prefix(x, unit)
+		return strconv.FormatFloat(x, 'f', 0, 64) + behind(unit)
 	}
-	rounded, _ := strconv.ParseFloat(strconv.FormatFloat(x, 'e', digits-1, 64), 64)
-	scale, prefixed := Prefix(rounded, unit)
-	y := rounded / scale
-	decimals := 0
-	if y != 0 {
-		decimals = max(0, digits-1-int(math.Floor(math.Log10(math.Abs(y)*(1+1e-12)))))
+	if x == 0 {
+		_, unit = Prefix(x, unit)
+		return "0" + behind(unit)
 	}
-	return strconv.FormatFloat(y, 'f', decimals, 64) + behind(prefixed)
-}
-
-// place is the number of decimals, negative for whole tens, at which u has two
-// significant digits.
-func place(u float64) int {
-	digits := strconv.FormatFloat(math.Abs(u), 'e', 1, 64) // rounded first: 0.0996 is 0.10
-	exponent, _ := strconv.Atoi(digits[strings.IndexByte(digits, 'e')+1:])
-	return 1 - exponent
-}
-
-// fixed writes y at a decimal place, which may be negative.
-func fixed(y float64, place int) string {
-	if place >= 0 {
-		s := strconv.FormatFloat(y, 'f', place, 64)
-		if strings.Trim(s, "-0.") == "" {
-			return strings.TrimPrefix(s, "-")
-		}
-		return s
-	}
-	unit := math.Pow(10, float64(-place))
-	return strconv.FormatFloat(math.Round(y/unit)*unit, 'f', 0, 64)
-}
-
-// usable tells whether u can set the place to round to.
-func usable(x, u float64) bool {
-	return u > 0 && !math.IsInf(u, 0) && !math.IsNaN(x) && !math.IsInf(x, 0)
+	scale, prefixed := Prefix(rounded(x, place(x, digits)), unit)
+	return fixed(x/scale, place(x/scale, digits)) + behind(prefixed)
 }
 
 // Concise writes a value with its standard uncertainty, to two digits, in
-// parentheses: "1.00021(15) MΩ" (GUM 7.2.2).
+// parentheses: "1.00021(15) MΩ", "119.8(15) nV". The digits count in the last
+// place of the value, with a point among them or not (GUM 7.2.2, second form).
 func Concise(x, u float64, unit string) string {
-	if !usable(x, u) {
-		return Format(x, 6, unit)
-	}
-	scale, prefixed := Prefix(math.Max(math.Abs(x), u), unit)
-	y, v := x/scale, u/scale
-	p := place(v)
-	digits := fixed(v, p)
-	if strings.HasPrefix(digits, "0.") {
-		digits = strings.TrimLeft(strings.Replace(digits, ".", "", 1), "0")
-	}
-	return fixed(y, p) + "(" + digits + ")" + behind(prefixed)
+	return withUncertainty(x, u, unit, func(x, u string) string {
+		return x + "(" + strings.TrimLeft(strings.Replace(u, ".", "", 1), "0") + ")"
+	})
 }
 
-// PlusMinus writes a value with an expanded uncertainty: "(119.8 ± 1.5) nV".
-func PlusMinus(x, u float64, unit string) string {
-	if !usable(x, u) {
+// PlusMinus writes a value with an expanded uncertainty, to two digits: "(119.8 ± 1.5) nV".
+func PlusMinus(x, U float64, unit string) string {
+	return withUncertainty(x, U, unit, func(x, U string) string { return "(" + x + " ± " + U + ")" })
+}
+
+// withUncertainty joins a value and an uncertainty of it, both to the place of
+// the uncertainty's second digit. A value without uncertainty stands alone, with
+// six digits; an uncertainty without limit is said to be one.
+func withUncertainty(x, u float64, unit string, join func(x, u string) string) string {
+	switch {
+	case u < 0:
+		panic("quantity: an uncertainty is not negative")
+	case u == 0 || !finite(x):
 		return Format(x, 6, unit)
+	case !finite(u):
+		return Format(x, 6, unit) + " ± " + strings.TrimPrefix(Format(u, 1, "1"), "+")
 	}
-	scale, prefixed := Prefix(math.Max(math.Abs(x), u), unit)
-	p := place(u / scale)
-	return "(" + fixed(x/scale, p) + " ± " + fixed(u/scale, p) + ")" + behind(prefixed)
+	// Rounded before the prefix is chosen: 999.9996(12) V is 1.0000000(12) kV.
+	scale, prefixed := Prefix(max(math.Abs(rounded(x, place(u, 2))), rounded(u, place(u, 2))), unit)
+	p := place(u/scale, 2)
+	return join(fixed(x/scale, p), fixed(u/scale, p)) + behind(prefixed)
 }
 
 // shareUnit chooses between percent and millionths.
 func shareUnit(x float64) (scale float64, unit string) {
-	if math.Abs(x) < 0.0005 {
+	if x != 0 && math.Abs(x) < 0.0005 {
 		return 1e-6, "ppm"
 	}
 	return 0.01, "%"
@@ -118,19 +97,47 @@ func shareUnit(x float64) (scale float64, unit string) {
 
 // Share writes a ratio with so many significant digits as "0.28 %" or "35 ppm".
 func Share(x float64, digits int) string {
-	if x == 0 {
-		return "0 %"
-	}
 	scale, unit := shareUnit(x)
-	return fixed(x/scale, place(x/scale)+digits-2) + " " + unit
+	return Format(x/scale, digits, unit)
 }
 
 // SharePlusMinus writes a ratio with its expanded uncertainty: "(0.276 ± 0.076) %".
-func SharePlusMinus(x, u float64) string {
-	if !usable(x, u) {
-		return Share(x, 3)
+func SharePlusMinus(x, U float64) string {
+	larger := math.Abs(x)
+	if finite(U) {
+		larger = max(larger, U)
 	}
-	scale, unit := shareUnit(math.Max(math.Abs(x), u))
-	p := place(u / scale)
-	return "(" + fixed(x/scale, p) + " ± " + fixed(u/scale, p) + ") " + unit
+	scale, unit := shareUnit(larger)
+	return PlusMinus(x/scale, U/scale, unit)
+}
+
+func finite(x float64) bool { return !math.IsInf(x, 0) && !math.IsNaN(x) }
+
+// place is the number of decimals, negative for whole tens, that leaves so many
+// significant digits of x. They are counted after rounding: 0.0996 to two is 0.10.
+func place(x float64, digits int) int {
+	s := strconv.FormatFloat(x, 'e', digits-1, 64)
+	exponent, _ := strconv.Atoi(s[strings.IndexByte(s, 'e')+1:]) // always there for a finite x
+	return digits - 1 - exponent
+}
+
+// fixed writes y to a number of decimals, which may be negative. A zero has no sign.
+func fixed(y float64, place int) string {
+	s := ""
+	if place >= 0 {
+		s = strconv.FormatFloat(y, 'f', place, 64)
+	} else {
+		tens := math.Pow(10, float64(-place))
+		s = strconv.FormatFloat(math.RoundToEven(y/tens)*tens, 'f', 0, 64)
+	}
+	if strings.Trim(s, "-0.") == "" {
+		return strings.TrimPrefix(s, "-")
+	}
+	return s
+}
+
+// rounded is the number that fixed writes.
+func rounded(y float64, place int) float64 {
+	x, _ := strconv.ParseFloat(fixed(y, place), 64) // its text is a number
+	return x
 }

@@ -20,13 +20,15 @@ const (
 	Length                             // m
 	Area                               // m²
 	Angle                              // rad; written in degrees or radians
-	Temperature                        // °C
+	Temperature                        // °C; not in K, which is for differences
 	Power                              // W
 	NoiseVoltage                       // V/√Hz
 	NoiseCurrent                       // A/√Hz
 	CapacitancePerLength               // F/m
 	TemperatureCoefficient             // 1/K
 	Ratio                              // 1; written in %, ‰, ppm or as a bare number
+
+	temperatureDifference // K; of an uncertainty
 )
 
 // unit is one way to write a kind's unit.
@@ -56,7 +58,7 @@ func plain(text string, scale float64) unit { return unit{text: text, scale: sca
 var kinds = [...]kind{
 	Voltage: {"a voltage", "V", "70.7 µV", []unit{si("V"),
 		amplitude("Vrms", RMS), amplitude("Vpk", Peak), amplitude("Vp", Peak), amplitude("Vpp", PeakToPeak)}},
-	Resistance:  {"a resistance", "Ω", "10 kΩ", []unit{si("Ω"), si("Ω"), si("ohm"), si("Ohm"), si("ohms")}},
+	Resistance:  {"a resistance", "Ω", "10 kΩ", []unit{si("\u03a9"), si("\u2126"), si("ohm"), si("Ohm"), si("ohms")}},
 	Capacitance: {"a capacitance", "F", "25 pF", []unit{si("F")}},
 	Inductance:  {"an inductance", "H", "1 µH", []unit{si("H")}},
 	Frequency:   {"a frequency", "Hz", "137 Hz", []unit{si("Hz")}},
@@ -64,12 +66,13 @@ var kinds = [...]kind{
 	Length:      {"a length", "m", "0.5 m", []unit{si("m"), plain("cm", 0.01)}},
 	Area: {"an area", "m²", "0.25 mm²", []unit{
 		{"m²", 1, true, 2, Unstated}, {"m2", 1, true, 2, Unstated}, {"m^2", 1, true, 2, Unstated}}},
-	Angle:                {"an angle", "rad", "90 deg", []unit{plain("deg", math.Pi/180), plain("°", math.Pi/180), si("rad")}},
-	Temperature:          {"a temperature", "°C", "23 °C", []unit{plain("°C", 1), plain("degC", 1), plain("℃", 1)}},
-	Power:                {"a power", "W", "250 mW", []unit{si("W")}},
-	NoiseVoltage:         {"a noise density", "V/√Hz", "6 nV/√Hz", []unit{si("V/√Hz"), si("V/rtHz"), si("V/sqrt(Hz)")}},
-	NoiseCurrent:         {"a current noise density", "A/√Hz", "10 fA/√Hz", []unit{si("A/√Hz"), si("A/rtHz"), si("A/sqrt(Hz)")}},
-	CapacitancePerLength: {"a capacitance per length", "F/m", "100 pF/m", []unit{si("F/m")}},
+	Angle:                 {"an angle", "rad", "90 deg", []unit{plain("deg", math.Pi/180), plain("°", math.Pi/180), si("rad")}},
+	Temperature:           {"a temperature", "°C", "23 °C", []unit{plain("°C", 1), plain("degC", 1), plain("℃", 1)}},
+	Power:                 {"a power", "W", "250 mW", []unit{si("W")}},
+	NoiseVoltage:          {"a noise density", "V/√Hz", "6 nV/√Hz", []unit{si("V/√Hz"), si("V/rtHz"), si("V/sqrt(Hz)")}},
+	NoiseCurrent:          {"a current noise density", "A/√Hz", "10 fA/√Hz", []unit{si("A/√Hz"), si("A/rtHz"), si("A/sqrt(Hz)")}},
+	temperatureDifference: {"a temperature", "K", "0.5 °C", []unit{si("K"), plain("°C", 1), plain("degC", 1), plain("℃", 1)}},
+	CapacitancePerLength:  {"a capacitance per length", "F/m", "100 pF/m", []unit{si("F/m")}},
 	TemperatureCoefficient: {"a temperature coefficient", "1/K", "25 ppm/K", []unit{
 		plain("ppm/K", 1e-6), plain("ppm/°C", 1e-6), plain("%/K", 0.01), plain("%/°C", 0.01), plain("/K", 1), plain("1/K", 1), plain("/°C", 1)}},
 	Ratio: {"a share", "1", "0.1 %", []unit{plain("%", 0.01), plain("‰", 0.001), plain("ppm", 1e-6), plain("", 1)}},
@@ -85,12 +88,13 @@ func (k Kind) Unit() string { return kinds[k].unit }
 func (k Kind) Example() string { return kinds[k].example }
 
 // prefixes of the SI, 9th brochure, Table 7, as far as a bench needs them. The
-// micro sign, the Greek mu and the letter u are one.
+// micro sign (U+00B5), the Greek mu (U+03BC) and the letter u are one, as are
+// the Greek omega (U+03A9) and the ohm sign (U+2126) above.
 var prefixes = []struct {
 	text  string
 	scale float64
 }{
-	{"f", 1e-15}, {"p", 1e-12}, {"n", 1e-9}, {"µ", 1e-6}, {"μ", 1e-6}, {"u", 1e-6}, {"m", 1e-3},
+	{"f", 1e-15}, {"p", 1e-12}, {"n", 1e-9}, {"\u00b5", 1e-6}, {"\u03bc", 1e-6}, {"u", 1e-6}, {"m", 1e-3},
 	{"k", 1e3}, {"M", 1e6}, {"G", 1e9}, {"T", 1e12},
 }
 

@@ -1,0 +1,103 @@
+package calib
+
+import (
+	"math"
+	"math/cmplx"
+	"math/rand/v2"
+
+	"rungproof/calib/plan"
+	"rungproof/calib/reading"
+)
+
+// Truth is what a simulated bench and detector are really like. The zero value,
+// with Gain 1, is a detector and a bench without fault.
+type Truth struct {
+	Gain      float64
+	RangeGain map[int]float64 // further factor on the gain of single ranges, by index
+	Offset    float64         // V rms; a share of range where the plan says so
+	OffsetY   float64         // two-phase: in quadrature
+	Series    float64         // Ω
+	Phase     float64         // rad, two-phase: the reference's phase
+	Fine      bool            // the display rounds nothing
+}
+
+// Simulator draws readings as the bench of a plan would have given them.
+type Simulator struct {
+	m *model
+}
+
+// NewSimulator prepares the simulation of a plan's readings.
+func NewSimulator(p *plan.Plan) *Simulator {
+	return &Simulator{m: perfect(p)}
+}
+
+// Readings draws every uncertain input from its distribution, then the readings
+// of every step, with the detector's noise, the scatter of its gain and the
+// rounding of its display. The same random numbers give the same readings.
+func (s *Simulator) Readings(t Truth, random *rand.Rand) *reading.Set {
+	m := s.m
+	nu := m.forward.stated()
+	for i, in := range m.forward.inputs {
+		nu[i] += in.U * draw(in.Shape, random)
+	}
+	m.forward.compute(nu, t.Series)
+	set := &reading.Set{File: "simulated"}
+	for i := range m.obs {
+		o := &m.obs[i]
+		for range m.plan.Steps[o.step].Repeats {
+			z := m.one(i, nu, &t, random)
+			if m.plan.Detector.Reads == plan.Magnitude {
+				z = complex(cmplx.Abs(z), 0)
+			}
+			if m.axes == 1 {
+				z = complex(real(z), 0)
+			}
+			if display := m.plan.Detector.Resolution * m.plan.Detector.Ranges[o.rng]; display > 0 && !t.Fine {
+				z = complex(math.Round(real(z)/display)*display, math.Round(imag(z)/display)*display)
+			}
+			set.Readings = append(set.Readings, reading.Reading{Step: o.step, X: real(z), Y: imag(z), Range: o.rng})
+		}
+	}
+	return set
+}
+
+// one reading before the display: the signal along the reference and across it.
+func (m *model) one(i int, nu []float64, t *Truth, random *rand.Rand) complex128 {
+	o := &m.obs[i]
+	step := &m.plan.Steps[o.step]
+	d := &m.forward.drops[m.forward.of[o.step]]
+	g := t.Gain
+	if k, ok := t.RangeGain[o.rng]; ok {
+		g *= k
+	}
+	full := 1.0
+	if m.plan.Fit.OffsetPerRange {
+		full = m.plan.Detector.Ranges[o.rng]
+	}
+	offset := complex(t.Offset*full, t.OffsetY*full)
+	noise := complex(o.noise*random.NormFloat64(), o.noise*random.NormFloat64())
+	scatter := m.plan.Detector.Stability * random.NormFloat64()
+	size, _ := d.size()
+	switch m.plan.Detector.Reads {
+	case plan.TwoPhase:
+		return complex(g, 0)*d.V*cmplx.Rect(1, t.Phase-step.Phase)*complex(1+scatter, 0) + offset + noise
+	case plan.Magnitude:
+		return complex(g*size*(1+scatter), 0) + offset + noise
+	}
+	c := math.Cos(step.Phase)
+	if k := m.forward.cosine[d.frequency]; k >= 0 {
+		c *= 1 - nu[k]
+	}
+	if k := m.forward.turn[d.frequency]; k >= 0 {
+		c += nu[k] * math.Sin(step.Phase)
+	}
+	return complex(g*size*c+scatter*d.stated, 0) + offset + noise
+}
+
+// draw is one deviation of a distribution with mean 0 and standard deviation 1.
+func draw(shape plan.Shape, random *rand.Rand) float64 {
+	if shape == plan.Rectangular {
+		return math.Sqrt(3) * (2*random.Float64() - 1)
+	}
+	return random.NormFloat64()
+}
