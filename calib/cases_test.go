@@ -8,6 +8,7 @@ import (
 	"testing"
 
 	"rungproof/calib/plan"
+	"rungproof/calib/quantity"
 	"rungproof/calib/reading"
 )
 
@@ -154,7 +155,7 @@ func compareFit(t *testing.T, got *Result, want *refCase) {
 		t.Errorf("%d phases, want %d", len(f.Phase), len(want.Fit.Phase))
 	}
 	for _, p := range f.Phase {
-		compareEstimate(t, "phase at "+hertz(p.Frequency), p.Estimate, want.Fit.Phase[fmt.Sprint(p.Frequency)])
+		compareEstimate(t, "phase at "+quantity.Plain(p.Frequency, "Hz"), p.Estimate, want.Fit.Phase[fmt.Sprint(p.Frequency)])
 	}
 }
 

@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"rungproof/calib/plan"
+	"rungproof/calib/quantity"
 	"rungproof/circuit"
 )
 
@@ -213,7 +214,7 @@ func (b *bench) listAmplitudes() {
 		}
 	}
 	for i, f := range b.plan.Frequencies {
-		if k := b.add("generator at "+hertz(f), 0, "1", g.PerFrequency.Of(1), g.PerFrequency); k >= 0 {
+		if k := b.add("generator at "+quantity.Plain(f, "Hz"), 0, "1", g.PerFrequency.Of(1), g.PerFrequency); k >= 0 {
 			b.relative = append(b.relative, relative{k, -1, i})
 		}
 	}
@@ -280,9 +281,9 @@ func (b *bench) listReadout() {
 		cosine, turn := -1, -1
 		if u := p.Detector.PhaseAlignment; u > 0 && p.Detector.Reads == plan.InPhase {
 			from := plan.Uncertainty{Standard: -1}
-			cosine = b.add("loss by alignment at "+hertz(f), u*u/2, "1", u*u/math.Sqrt2, from)
+			cosine = b.add("loss by alignment at "+quantity.Plain(f, "Hz"), u*u/2, "1", u*u/math.Sqrt2, from)
 			if offAxis[i] {
-				turn = b.add("alignment at "+hertz(f), 0, "rad", u, from)
+				turn = b.add("alignment at "+quantity.Plain(f, "Hz"), 0, "rad", u, from)
 			}
 		}
 		b.cosine, b.turn = append(b.cosine, cosine), append(b.turn, turn)

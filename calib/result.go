@@ -65,6 +65,16 @@ type Result struct {
 	ReadingsSHA256 string        `json:"readings_sha256,omitempty"`
 }
 
+// Deciding are the offset and the series resistance that errors and verdict rest
+// on: those of the fit by range where one common gain is wrong, since the common
+// fit then charges the faulty range's error to them.
+func (r *Result) Deciding() (offset, series Estimate) {
+	if r.ByRange.Used {
+		return r.ByRange.Offset, r.ByRange.SeriesResistance
+	}
+	return r.Fit.Offset, r.Fit.SeriesResistance
+}
+
 // FitResult is the fit that the plan asks for.
 type FitResult struct {
 	Separable        bool              `json:"separable"` // offset and series resistance

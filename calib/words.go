@@ -3,15 +3,7 @@ package calib
 import (
 	"fmt"
 	"strings"
-
-	"rungproof/calib/quantity"
 )
-
-// hertz is a frequency as people write it, with no more digits than it has.
-func hertz(f float64) string {
-	scale, unit := quantity.Prefix(f, "Hz")
-	return fmt.Sprintf("%.6g %s", f/scale, unit)
-}
 
 func plural(n int) string {
 	if n == 1 {

@@ -15,6 +15,7 @@ import (
 
 // Kinds of findings.
 const (
+	BeyondLimit    = "beyond the limit"
 	NotSeparable   = "not separable"
 	Offset         = "offset"
 	Series         = "series resistance"
@@ -36,7 +37,7 @@ const level = 0.01
 func Findings(e *calib.Evaluation) []calib.Finding {
 	var out []calib.Finding
 	for _, find := range []func(*calib.Evaluation) []calib.Finding{
-		notSeparable, rangeGain, gain, offset, series, scatter, misfit, lists, lapsed,
+		beyondLimit, notSeparable, rangeGain, gain, offset, series, scatter, misfit, lists, lapsed,
 	} {
 		out = append(out, find(e)...)
 	}
@@ -61,6 +62,26 @@ func size(e *calib.Evaluation, x calib.Estimate) string {
 		return quantity.PlusMinus(x.Value, U, "Ω")
 	}
 	return quantity.PlusMinus(x.Value, U, x.Unit)
+}
+
+// small is the share of the limit below which a detector's deviation needs no action.
+const small = 0.5
+
+// shareOfLimits is the largest share of a step's limit that a part of its error
+// takes; infinite where nothing is judged.
+func shareOfLimits(e *calib.Evaluation, part func(*calib.StepResult) float64) float64 {
+	largest := math.Inf(1)
+	for i := range e.Result.Steps {
+		s := &e.Result.Steps[i]
+		if share := math.Abs(part(s)) / float64(s.Limit); !math.IsNaN(share) && (math.IsInf(largest, 1) || share > largest) {
+			largest = share
+		}
+	}
+	return largest
+}
+
+func within(share float64) string {
+	return fmt.Sprintf("it takes at most %.0f %% of a limit: no action is needed.", math.Ceil(100*share))
 }
 
 // seriesArm is the arm that the unknown series resistance is in.
@@ -124,11 +145,11 @@ func rangeGain(e *calib.Evaluation) []calib.Finding {
 	whose := make([]string, len(odd))
 	for i, k := range odd {
 		kg := g.Gain[k]
-		whose[i] = fmt.Sprintf("the %s range reads %s off", quantity.Format(kg.Range/e.Plan.Detector.ToRMS, 3, "V"),
+		whose[i] = fmt.Sprintf("the %s range reads %s off", quantity.Plain(kg.Range/e.Plan.Detector.ToRMS, "V"),
 			quantity.SharePlusMinus(kg.Value-1, e.Result.CoverageFactor*kg.U))
 	}
 	return one(RangeGain, "have that range adjusted or repaired; the others are judged without its error.",
-		"one gain for all ranges does not fit (p = %s): %s. It is the detector's.", probability(float64(g.PCommon)), strings.Join(whose, ", "))
+		"one gain for all ranges does not fit (%s): %s. It is the detector's.", probability(float64(g.PCommon)), strings.Join(whose, ", "))
 }
 
 // oddOnes are the ranges whose gain differs from the weighted median of all by
@@ -157,12 +178,15 @@ func oddOnes(e *calib.Evaluation, gains []calib.KeyGain) []int {
 
 func gain(e *calib.Evaluation) []calib.Finding {
 	g := e.Result.Fit.Gain
-	if !found(e, g, 1) {
+	if e.Result.ByRange.Used || !found(e, g, 1) {
 		return nil
 	}
 	deviation := g
 	deviation.Value--
 	do := "correct the readings by it, or have the detector adjusted."
+	if share := shareOfLimits(e, func(s *calib.StepResult) float64 { return deviation.Value * s.Expected }); share < small {
+		do = within(share)
+	}
 	if name := convention(g.Value); name != "" {
 		do = "check the amplitude's convention first: this ratio is " + name + "."
 	}
@@ -191,8 +215,12 @@ func convention(g float64) string {
 
 func offset(e *calib.Evaluation) []calib.Finding {
 	var out []calib.Finding
-	if o := e.Result.Fit.Offset; found(e, o, 0) {
-		out = one(Offset, "zero the detector's output with the input shorted, or correct the readings by it.",
+	if o, _ := e.Result.Deciding(); found(e, o, 0) {
+		do := "zero the detector's output with the input shorted, or correct the readings by it."
+		if share := shareOfLimits(e, func(s *calib.StepResult) float64 { return offsetAt(e, s) }); share < small {
+			do = within(share)
+		}
+		out = one(Offset, do,
 			"the detector adds %s to every reading, whatever the signal: the same at every amplitude and at either reference phase. It is the detector's.", size(e, o))
 	}
 	if y := e.Result.Fit.OffsetQuadrature; y != nil && found(e, *y, 0) {
@@ -202,7 +230,7 @@ func offset(e *calib.Evaluation) []calib.Finding {
 }
 
 func series(e *calib.Evaluation) []calib.Finding {
-	r := e.Result.Fit.SeriesResistance
+	_, r := e.Result.Deciding()
 	from := 0.0
 	if x := e.Plan.Fit.SeriesExpected; x != nil {
 		from = x.X
@@ -223,7 +251,7 @@ func scatter(e *calib.Evaluation) []calib.Finding {
 		return nil
 	}
 	return one(Scatter, "wait longer between readings, look for interference, earth loops and loose contacts. "+EarthCaution,
-		"repeated readings scatter %.1f times as much as the plan's noise, stability and resolution predict (p = %s): interference, an earth loop, or a filter that has not settled.",
+		"repeated readings scatter %.1f times as much as the plan's noise, stability and resolution predict (%s): interference, an earth loop, or a filter that has not settled.",
 		float64(r.Ratio), probability(float64(r.P)))
 }
 
@@ -243,6 +271,6 @@ func misfit(e *calib.Evaluation) []calib.Finding {
 		}
 	}
 	return one(Misfit, "look at that step's settings first, then at the uncertainties that the plan states.",
-		"the readings do not fit the model as well as their uncertainties say (χ² = %.4g with %d degrees of freedom, p = %s); the farthest is step %s.",
+		"the readings do not fit the model as well as their uncertainties say (χ² = %.4g with %d degrees of freedom, %s); the farthest is step %s.",
 		float64(f.ChiSquared), f.DOF, probability(p), at)
 }

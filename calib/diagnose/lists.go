@@ -55,9 +55,9 @@ func orNone(s string) string {
 // probability is a p value for people: two digits, or a bound.
 func probability(p float64) string {
 	if p < 1e-6 {
-		return "under 0.000001"
+		return "p < 0.000001"
 	}
-	return fmt.Sprintf("%.2g", p)
+	return fmt.Sprintf("p = %.2g", p)
 }
 
 // weightedMedian is the median of the known gains, each weighted by the inverse

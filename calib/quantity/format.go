@@ -8,15 +8,17 @@ import (
 )
 
 // unprefixed are the units that take no SI prefix on output. A unit of "1" is not written.
-var unprefixed = []string{"", "1", "%", "‰", "ppm", "°C", "°", "deg", "rad", "1/K"}
+var unprefixed = []string{"", "%", "‰", "ppm", "°C", "°", "deg", "rad", "1/K"}
 
 // Prefix chooses the SI prefix that leaves one to three digits before the point.
 // x is scale times the number to write before the prefixed unit.
 func Prefix(x float64, unit string) (scale float64, prefixed string) {
 	x = math.Abs(x)
 	switch {
+	case unit == "1":
+		return 1, ""
 	case slices.Contains(unprefixed, unit):
-		return 1, strings.TrimPrefix(unit, "1")
+		return 1, unit
 	case x == 0 || math.IsInf(x, 0) || math.IsNaN(x):
 		return 1, unit
 	case unit == "m²": // of a conductor; the prefix is raised to the power with its unit
@@ -140,4 +142,12 @@ func fixed(y float64, place int) string {
 func rounded(y float64, place int) float64 {
 	x, _ := strconv.ParseFloat(fixed(y, place), 64) // its text is a number
 	return x
+}
+
+// Plain writes a number with an SI prefix and no more digits than it has, six at
+// most: "137 Hz", "1.7 kHz", "100 mV".
+func Plain(x float64, unit string) string {
+	rounded, _ := strconv.ParseFloat(strconv.FormatFloat(x, 'e', 5, 64), 64)
+	scale, prefixed := Prefix(rounded, unit)
+	return strconv.FormatFloat(scaled(rounded, 1/scale), 'g', 6, 64) + behind(prefixed)
 }

@@ -1,7 +1,8 @@
 // Package quantity reads and writes physical quantities as people put them down:
-// a number, optionally the standard uncertainty of its last digits in
-// parentheses (GUM 7.2.2), an SI prefix and a unit. Inside, a quantity is a
-// float64 in its base unit; text is for the edges only.
+// a number, optionally its standard uncertainty in parentheses (GUM 7.2.2), an SI
+// prefix and a unit (SI brochure, 9th edition). Inside, a quantity is a float64 in
+// its base unit, of either sign; text is for the edges only. What cannot be read is
+// an error that states what was found and how it would be right.
 package quantity
 
 import "math"

@@ -1,0 +1,51 @@
+package main
+
+import (
+	"errors"
+	"fmt"
+	"io"
+	"io/fs"
+	"os"
+
+	"rungproof/calib/plan"
+	"rungproof/calib/reading"
+)
+
+// source reads a whole file, or standard input where the name is "-". The name
+// that messages use comes back with it.
+func (s *streams) source(name string) (string, []byte, error) {
+	if name == "-" {
+		b, err := io.ReadAll(s.in)
+		return "standard input", b, err
+	}
+	b, err := os.ReadFile(name)
+	if err != nil {
+		err = fileError(name, err)
+	}
+	return name, b, err
+}
+
+// fileError names the file first and once.
+func fileError(name string, err error) error {
+	var path *fs.PathError
+	if errors.As(err, &path) {
+		err = path.Err
+	}
+	return fmt.Errorf("%s: %w", name, err)
+}
+
+func (s *streams) plan(name string) (*plan.Plan, error) {
+	called, b, err := s.source(name)
+	if err != nil {
+		return nil, err
+	}
+	return plan.Parse(called, b)
+}
+
+func (s *streams) readings(name string, p *plan.Plan) (*reading.Set, error) {
+	called, b, err := s.source(name)
+	if err != nil {
+		return nil, err
+	}
+	return reading.Parse(called, b, p)
+}

@@ -1,0 +1,42 @@
+package main
+
+import (
+	"bytes"
+
+	"github.com/spf13/cobra"
+
+	"rungproof/calib"
+	"rungproof/calib/reading"
+)
+
+func sheetCommand(s *streams) *cobra.Command {
+	return &cobra.Command{
+		Use:   "sheet PLAN",
+		Short: "write a bench sheet (CSV) to fill in",
+		Long: `Writes a CSV bench sheet for PLAN to standard output: a row a reading, the
+expected value and the settings beside the empty reading, in an order that needs
+few changes of range and box. Fill in the readings and give the file to judge,
+which checks the settings against the plan.`,
+		Example: "  rungproof sheet plan.toml > bench.csv",
+		Args:    exactly("PLAN"),
+		RunE: func(_ *cobra.Command, args []string) error {
+			p, err := s.plan(args[0])
+			if err != nil {
+				return err
+			}
+			x, err := calib.Expect(p)
+			if err != nil {
+				return err
+			}
+			expected := make([]float64, len(x.Steps))
+			for i, step := range x.Steps {
+				expected[i] = step.Expected
+			}
+			var b bytes.Buffer
+			if err := reading.Sheet(&b, p, expected); err != nil {
+				return err
+			}
+			return s.write(b.Bytes(), nil)
+		},
+	}
+}

@@ -1,0 +1,90 @@
+package report
+
+import (
+	"fmt"
+	"math"
+	"strings"
+	"time"
+
+	"rungproof/calib"
+	"rungproof/calib/plan"
+	"rungproof/calib/quantity"
+)
+
+// ExpectJSON is an expectation for programs.
+func ExpectJSON(x *calib.Expectation) ([]byte, error) { return indented(x) }
+
+// Expect is an expectation as tables of 80 columns: two lines a step.
+func Expect(p *plan.Plan, x *calib.Expectation) string {
+	var b strings.Builder
+	if p.Title != "" {
+		fmt.Fprintln(&b, fit(p.Title, columns))
+	}
+	fmt.Fprintf(&b, "%d steps, %s of waiting for the filter, without the time to change settings\n", len(x.Steps), duration(x.BenchTime))
+	fmt.Fprintf(&b, "all voltages rms; U is expanded (k = %.3g)\n\n", x.CoverageFactor)
+	fmt.Fprintf(&b, "%-7s%-25s%-9s%-7s%-13s%-8s%s\n", "step", "drop (standard u)", "phase", "scatter", " of one", "wait", "limit (limit/U)")
+	for _, s := range x.Steps {
+		expectedStep(&b, p, &s)
+	}
+	b.WriteByte('\n')
+	resolves(&b, p, x)
+	b.WriteString(findings(x.Findings, math.MaxInt))
+	return b.String()
+}
+
+// expectedStep writes a step: what is set, then what is to be seen.
+func expectedStep(b *strings.Builder, p *plan.Plan, s *calib.ExpectedStep) {
+	limit := "not judged"
+	if !math.IsNaN(float64(s.Limit)) {
+		limit = fmt.Sprintf("%s (%s)", quantity.Format(float64(s.Limit), 3, "V"), quantity.Format(float64(s.Ratio), 2, "1"))
+	}
+	set := fmt.Sprintf("%s, on %s at %s", stepSettings(p, &p.Steps[s.Index]), displayed(s.Range/p.Detector.ToRMS), percent(s.Share))
+	fmt.Fprintf(b, "%-7s%s\n", fit(s.ID, 6), fit(set, columns-7))
+	fmt.Fprintf(b, "%-7s%-25s%-9s%-20s%-8s%s\n", "", quantity.Concise(s.Drop, s.UExpected, "V"), fmt.Sprintf("%.2f°", math.Round(100*s.PhaseDeg)/100+0),
+		quantity.Format(s.SigmaOne, 2, "V"), duration(s.Wait), limit)
+}
+
+// resolves says what the plan can tell, before anyone has measured.
+func resolves(b *strings.Builder, p *plan.Plan, x *calib.Expectation) {
+	u := func(e calib.Estimate) string {
+		switch {
+		case !e.Known:
+			return "not determined"
+		case e.Unit == "1":
+			return quantity.Share(x.CoverageFactor*e.U, 2)
+		case e.Unit == "ohm":
+			return quantity.Format(x.CoverageFactor*e.U, 2, "Ω")
+		}
+		return quantity.Format(x.CoverageFactor*e.U, 2, e.Unit)
+	}
+	fmt.Fprintln(b, "What this plan can resolve (U of what is found)")
+	fmt.Fprintf(b, "  gain               %s\n", u(x.Gain))
+	if x.Separable {
+		fmt.Fprintf(b, "  offset             %s\n", u(x.Offset))
+		fmt.Fprintf(b, "  series resistance  %s\n", u(x.SeriesResistance))
+		for _, pair := range []string{"gain,offset", "gain,series_resistance", "offset,series_resistance"} {
+			if rho, ok := x.Correlation[pair]; ok {
+				a, c, _ := strings.Cut(strings.ReplaceAll(pair, "_", " "), ",")
+				fmt.Fprintf(b, "  correlation of %s and %s: %.2f\n", a, c, float64(rho))
+			}
+		}
+	} else {
+		fmt.Fprintln(b, "  an offset and a series resistance cannot be told apart.")
+	}
+	for _, g := range x.GainByRange {
+		fmt.Fprintf(b, "  gain of the %s range  %s\n", displayed(g.Range/p.Detector.ToRMS), u(g.Estimate))
+	}
+	b.WriteByte('\n')
+}
+
+// duration is a time for people: 1.8 s, 4 min 12 s, 1 h 5 min.
+func duration(seconds float64) string {
+	d := time.Duration(seconds * float64(time.Second))
+	switch {
+	case d < time.Minute:
+		return quantity.Format(seconds, 2, "s")
+	case d < time.Hour:
+		return fmt.Sprintf("%d min %d s", int(d.Minutes()), int(d.Seconds())%60)
+	}
+	return fmt.Sprintf("%d h %d min", int(d.Hours()), int(d.Minutes())%60)
+}

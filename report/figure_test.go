@@ -1,0 +1,147 @@
+package report
+
+import (
+	"bytes"
+	"flag"
+	"image"
+	"image/png"
+	"os"
+	"path/filepath"
+	"testing"
+
+	"rungproof/calib"
+	"rungproof/calib/plan"
+	"rungproof/calib/reading"
+)
+
+var figuresUpdate = flag.Bool("figures.update", false, "draw the golden figures in testdata/figures anew; look at each of them")
+
+// figureEvaluation evaluates a plan and its readings.
+func figureEvaluation(t testing.TB, planText, rows string) *calib.Evaluation {
+	t.Helper()
+	p, err := plan.Parse("figure.toml", []byte(planText))
+	if err != nil {
+		t.Fatal(err)
+	}
+	set, err := reading.Parse("figure.csv", []byte(rows), p)
+	if err != nil {
+		t.Fatal(err)
+	}
+	e, err := calib.Evaluate(p, set)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return e
+}
+
+// figureCase evaluates one of the cases of package calib.
+func figureCase(t testing.TB, name string) *calib.Evaluation {
+	t.Helper()
+	text := func(extension string) string {
+		b, err := os.ReadFile("../calib/testdata/cases/" + name + extension)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return string(b)
+	}
+	return figureEvaluation(t, text(".toml"), text(".csv"))
+}
+
+var figureCases = []string{"arrival", "one-amplitude", "quadrature", "string"}
+
+func mustFigures(t testing.TB, e *calib.Evaluation) []Figure {
+	t.Helper()
+	figures, err := Figures(e)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return figures
+}
+
+func figurePixels(t testing.TB, b []byte) image.Image {
+	t.Helper()
+	m, err := png.Decode(bytes.NewReader(b))
+	if err != nil {
+		t.Fatal(err)
+	}
+	return m
+}
+
+// The golden pictures were looked at by a person; every pixel must stay.
+func TestFiguresOfArrivalAreAsLookedAt(t *testing.T) {
+	for _, f := range mustFigures(t, figureCase(t, "arrival")) {
+		file := filepath.Join("testdata", "figures", "arrival-"+f.Name)
+		if *figuresUpdate {
+			if err := os.MkdirAll(filepath.Dir(file), 0o777); err != nil {
+				t.Fatal(err)
+			}
+			if err := os.WriteFile(file, f.PNG, 0o666); err != nil {
+				t.Fatal(err)
+			}
+		}
+		golden, err := os.ReadFile(file)
+		if err != nil {
+			t.Fatal(err)
+		}
+		got, want := figurePixels(t, f.PNG), figurePixels(t, golden)
+		if got.Bounds() != want.Bounds() {
+			t.Errorf("%s is %v, want %v", f.Name, got.Bounds(), want.Bounds())
+			continue
+		}
+		different := 0
+		for y := range want.Bounds().Max.Y {
+			for x := range want.Bounds().Max.X {
+				if got.At(x, y) != want.At(x, y) {
+					different++
+				}
+			}
+		}
+		if different > 0 {
+			t.Errorf("%s differs from the golden picture in %d pixels", f.Name, different)
+		}
+	}
+}
+
+func TestFiguresAreTheSameBytesEachTime(t *testing.T) {
+	for _, name := range figureCases {
+		first, second := mustFigures(t, figureCase(t, name)), mustFigures(t, figureCase(t, name))
+		if len(first) != len(second) {
+			t.Fatalf("%s: %d figures, then %d", name, len(first), len(second))
+		}
+		for i := range first {
+			if first[i].Caption != second[i].Caption || !bytes.Equal(first[i].PNG, second[i].PNG) {
+				t.Errorf("%s: %s differs from one time to the next", name, first[i].Name)
+			}
+		}
+	}
+}
+
+func TestFiguresOfEachCase(t *testing.T) {
+	for name, want := range map[string][]string{
+		"arrival":       {"readings.png", "errors.png", "unexplained.png", "joint.png"},
+		"one-amplitude": {"readings.png", "errors.png", "unexplained.png", "joint.png"},
+		"quadrature":    {"readings.png", "errors.png", "unexplained.png", "joint.png", "frequency.png"},
+		"string":        {"readings.png", "errors.png", "unexplained.png", "joint.png"},
+	} {
+		figures := mustFigures(t, figureCase(t, name))
+		if len(figures) != len(want) {
+			t.Errorf("%s has %d figures, want %v", name, len(figures), want)
+			continue
+		}
+		for i, f := range figures {
+			if f.Name != want[i] || f.Title == "" || f.Caption == "" {
+				t.Errorf("%s: figure %d is %q %q %q, want %s with title and caption", name, i, f.Name, f.Title, f.Caption, want[i])
+			}
+			if b := figurePixels(t, f.PNG).Bounds(); b.Dx() != 1400 || b.Dy() < 700 {
+				t.Errorf("%s: %s is %v", name, f.Name, b)
+			}
+		}
+	}
+}
+
+func BenchmarkFigures(b *testing.B) {
+	e := figureCase(b, "arrival")
+	for b.Loop() {
+		mustFigures(b, e)
+	}
+}

@@ -1,0 +1,157 @@
+package report
+
+import (
+	"bytes"
+	"embed"
+	"encoding/base64"
+	"fmt"
+	"html/template"
+	"image/png"
+	"io"
+	"math"
+	"regexp"
+	"strings"
+
+	"rungproof/calib"
+	"rungproof/calib/decision"
+	"rungproof/calib/plan"
+	"rungproof/calib/quantity"
+)
+
+//go:embed page.tmpl style.tmpl
+var templates embed.FS
+
+var pageTemplate = template.Must(template.ParseFS(templates, "*.tmpl"))
+
+// page is what the template is filled with, in the order of the page.
+type page struct {
+	Title      string
+	Plan       *plan.Plan
+	Result     *calib.Result
+	Verdict    mark
+	Decided    string
+	Identity   []pair
+	Voltages   string
+	Summary    grid
+	Findings   []calib.Finding
+	Figures    []picture
+	Gains      []grid
+	Steps      grid
+	Inputs     grid
+	Standards  grid
+	Method     []pair
+	References []string
+	Cautions   []calib.Finding
+	Source     string
+}
+
+// pair is a term and what is said of it.
+type pair struct{ Term, Text string }
+
+// picture is a figure within the page.
+type picture struct {
+	Title, Caption string
+	Width, Height  int // pixels
+	Data           template.URL
+}
+
+// HTML writes an evaluation as one page that needs nothing beside itself: no
+// network, no script. It is for the screen and for A4 or Letter paper.
+func HTML(w io.Writer, e *calib.Evaluation, figures []Figure) error {
+	p := &page{
+		Title: e.Plan.Title, Plan: e.Plan, Result: e.Result, Source: string(e.Plan.Source),
+		Verdict: markOf(e.Result.Verdict), Decided: decided(e),
+		Identity: identity(e.Plan), Voltages: voltages(e.Plan),
+		Summary: summary(e), Gains: gainTables(e), Steps: stepTable(e), Inputs: inputTable(e), Standards: standardTable(e),
+		Method: method(e), References: references(e),
+	}
+	if p.Title == "" {
+		p.Title = "Calibration of a synchronous detector"
+	}
+	for _, f := range e.Result.Findings {
+		f.Text, f.Do = minus(f.Text), minus(f.Do)
+		if f.Kind == "touch voltage" || f.Kind == "rating exceeded" {
+			p.Cautions = append(p.Cautions, f)
+		} else {
+			p.Findings = append(p.Findings, f)
+		}
+	}
+	for _, f := range figures {
+		size, err := png.DecodeConfig(bytes.NewReader(f.PNG))
+		if err != nil {
+			return fmt.Errorf("the figure %s is no PNG: %w", f.Name, err)
+		}
+		p.Figures = append(p.Figures, picture{f.Title, f.Caption, size.Width, size.Height,
+			template.URL("data:image/png;base64," + base64.StdEncoding.EncodeToString(f.PNG))})
+	}
+	var b bytes.Buffer
+	if err := pageTemplate.ExecuteTemplate(&b, "page.tmpl", p); err != nil {
+		return fmt.Errorf("the report's page: %w", err)
+	}
+	_, err := w.Write(b.Bytes())
+	return err
+}
+
+// mark is an outcome as it is shown: a word, a symbol and a class of the style,
+// so that colour is never the only sign.
+type mark struct{ Word, Symbol, Class string }
+
+func markOf(o decision.Outcome) mark {
+	symbols := map[decision.Outcome]string{decision.NotJudged: "–", decision.Pass: "✓",
+		decision.ConditionalPass: "(✓)", decision.ConditionalFail: "(✗)", decision.Fail: "✗"}
+	return mark{o.String(), symbols[o], strings.ReplaceAll(o.String(), " ", "-")}
+}
+
+// identity is what the plan states of the detector and of the circumstances.
+func identity(p *plan.Plan) []pair {
+	date := ""
+	if !p.Date.IsZero() {
+		date = p.Date.Format("2006-01-02")
+	}
+	frequencies := make([]string, len(p.Frequencies))
+	for i, f := range p.Frequencies {
+		frequencies[i] = hertz(f)
+	}
+	temperature := fmt.Sprintf("%.4g °C", p.Temperature.X)
+	switch {
+	case p.Temperature.Stated():
+		temperature = quantity.Concise(p.Temperature.X, p.Temperature.U(), "°C") + ", standard uncertainty in parentheses"
+	case p.Temperature.X == 23:
+		temperature += " (taken where a plan states none)"
+	}
+	var out []pair
+	for _, item := range []pair{
+		{"Detector", p.Detector.Description}, {"Serial", p.Detector.Serial}, {"Reads", p.Detector.Reads},
+		{"Frequency", calib.List(frequencies)}, {"Date", date}, {"Condition", p.Condition},
+		{"Operator", p.Operator}, {"Customer", p.Customer}, {"Procedure", p.Procedure},
+		{"Room temperature", minus(temperature)}, {"Humidity", p.Humidity}, {"Warm-up", p.WarmUp}, {"Notes", p.Notes},
+	} {
+		if item.Text != "" {
+			out = append(out, item)
+		}
+	}
+	return out
+}
+
+// voltages says what the voltages of the page are.
+func voltages(p *plan.Plan) string {
+	if p.Detector.Displays == "rms" {
+		return "All voltages are rms, but amplitudes, which are as the generator shows them."
+	}
+	return fmt.Sprintf("This detector displays %s values. All voltages in this report are rms all the same, but two: ranges have the names that the detector gives them, "+
+		"and amplitudes are as the generator shows them.", p.Detector.Displays)
+}
+
+// negative finds the hyphen of a negative number.
+var negative = regexp.MustCompile(`(^|[ (±])-(\d)`)
+
+// minus puts the minus sign in place of the hyphen before numbers.
+func minus(s string) string { return negative.ReplaceAllString(s, "${1}−${2}") }
+
+// shown writes a voltage, or nothing for what is not known.
+func shown(x float64, digits int) string {
+	if math.IsNaN(x) {
+		return ""
+	}
+	return minus(quantity.Format(x, digits, "V"))
+}

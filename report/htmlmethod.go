@@ -1,0 +1,87 @@
+package report
+
+import (
+	"fmt"
+	"math"
+
+	"rungproof/calib"
+	"rungproof/calib/plan"
+)
+
+// method says in plain sentences how the result was found.
+func method(e *calib.Evaluation) []pair {
+	p, r := e.Plan, e.Result
+	out := []pair{
+		{"Principle", "A generator of known amplitude drives a ladder of known resistors, and the detector reads the drop at one of the ladder's joints. " +
+			"The expected drop follows from the network of all arms, wires and stray capacitances, loaded by the detector's input, at the frequency of each step and at room temperature."},
+		{"Model", model(p)},
+		{"Why several amplitudes", "An offset is the same at every step, while the drop on a series resistance grows with the current: steps at several amplitudes, with the reference turned, or with the source off tell the two apart. " +
+			"They count as told apart where leaving the series resistance free makes the offset's uncertainty no more than 20 times as large."},
+		{"Fit", "Gain, offset and series resistance are estimated together with all uncertain inputs by least squares. Each input's stated value counts as a further observation, weighted by its uncertainty; errors that several inputs share move them together. " +
+			"Beside it stand the fits with a gain for each range and each frequency."},
+		{"Uncertainty", fmt.Sprintf("The covariance of that one problem carries the scatter of the readings, the inputs and all correlations. "+
+			"The scatter of one reading is predicted from noise, bandwidth of the filter, resolution and short-term stability; repeats reduce all but the resolution, and their observed scatter is tested against the prediction. "+
+			"A tolerance is a rectangular distribution, with its half-width over √3 for its standard uncertainty. U = k·u with k = %.3f, for a coverage of %.4g %%.", r.CoverageFactor, 100*r.Coverage)},
+		{"Error", "A step's error is its mean reading less the reading expected there with every input at its stated value: the standards are not corrected by the instrument under test. " +
+			"The fitted series resistance is the bench's and is counted as part of what is expected."},
+	}
+	if len(p.Detector.Limits) > 0 {
+		out = append(out, pair{"Decision", rule(p)})
+	}
+	return append(out, pair{"Validity", "The result holds for the detector named here, as it was at the time and in the circumstances stated."})
+}
+
+// model is the measurement model in the terms of what the detector reads.
+func model(p *plan.Plan) string {
+	const drop = "V is the drop, which the unknown series resistance r is part of; g is the detector's gain, o its offset and e the scatter. "
+	switch p.Detector.Reads {
+	case plan.TwoPhase:
+		return "z = g·V·exp(j(φ + arg V − θ)) + o + e, with V the size of the drop. " + drop +
+			"φ is the phase between generator and reference, fitted for each frequency, and θ the phase that a step sets. The error is along the expected reading; what lies across it is the phase error."
+	case plan.Magnitude:
+		return "r = mean of |g·V + o + e|. " + drop + "Noise makes a magnitude read high (Rice's distribution); the model holds that mean, and the error has it taken off."
+	}
+	return "x = g·V·cos θ·(1 − a) + o + e. " + drop + "θ is the phase of the reference from where it was turned to maximum, and a the loss from setting that maximum with limited care."
+}
+
+// rule is the plan's rule of decision.
+func rule(p *plan.Plan) string {
+	g := p.Decision.Guard
+	limits := "The limit is a share of the value applied plus a share of full scale, as the plan states them. "
+	if g == 0 {
+		return limits + "Simple acceptance: a step passes where its error is within the limit and fails beyond it; the uncertainty is not taken off. " +
+			"An error at its limit has an even chance of being beyond. The verdict is the worst outcome of all steps and of the gains that are limited."
+	}
+	width := "w = U"
+	if g != 1 {
+		width = fmt.Sprintf("w = %.3g·U", g)
+	}
+	return limits + fmt.Sprintf("Guarded acceptance with %s: pass where |error| ≤ limit − w, conditional pass up to the limit, conditional fail up to limit + w, fail beyond. "+
+		"A pass is then wrong with a probability of at most %.2g %%. The verdict is the worst outcome of all steps and of the gains that are limited.",
+		width, 100*beyond(g, p.Decision.Coverage))
+}
+
+// beyond is the probability that the true error is outside of a limit that the
+// measured one keeps clear of by g·U, normally distributed, one-sided
+// (JCGM 106:2012, 8.3.2): U is √2·erf⁻¹(coverage) standard uncertainties.
+func beyond(g, coverage float64) float64 { return math.Erfc(g*math.Erfinv(coverage)) / 2 }
+
+// references are the publications that the result rests on.
+func references(e *calib.Evaluation) []string {
+	out := []string{
+		"JCGM 100:2008, Evaluation of measurement data — Guide to the expression of uncertainty in measurement",
+		"ISO/IEC 17025:2017, General requirements for the competence of testing and calibration laboratories",
+		"S. W. Director and R. A. Rohrer, The generalized adjoint network and network sensitivities, IEEE Trans. Circuit Theory 16 (1969) 318–323",
+	}
+	if len(e.Plan.Detector.Limits) > 0 {
+		out = append(out, "JCGM 106:2012, Evaluation of measurement data — The role of measurement uncertainty in conformity assessment",
+			"ILAC-G8:09/2019, Guidelines on decision rules and statements of conformity")
+	}
+	for _, w := range e.Plan.Wires {
+		if w.TempCo != 0 { // computed from its conductor
+			return append(out, "IEC 60028, International standard of resistance for copper",
+				"ASTM B258, Standard nominal diameters and cross-sectional areas of AWG sizes of solid round wires used as electrical conductors")
+		}
+	}
+	return out
+}
