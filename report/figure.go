@@ -70,16 +70,11 @@ func (s *figureSheet) png(handler text.Handler) ([]byte, error) {
 	s.draw(draw.New(canvas), handler)
 	var out bytes.Buffer
 	encoder := png.Encoder{CompressionLevel: png.DefaultCompression}
-	if err := encoder.Encode(&out, opaque{canvas.Image()}); err != nil {
+	if err := encoder.Encode(&out, figurePalette(canvas.Image().(*image.RGBA))); err != nil {
 		return nil, err
 	}
 	return out.Bytes(), nil
 }
-
-// opaque tells the encoder that no pixel is transparent: a quarter of the bytes less.
-type opaque struct{ image.Image }
-
-func (opaque) Opaque() bool { return true }
 
 // figureWidth is common to all figures, so that they line up in a report.
 const figureWidth = 7 * vg.Inch

@@ -31,8 +31,11 @@ func figureNumber(x float64, decimals int) string {
 	if strings.Trim(s, "-0.") == "" {
 		s = strings.TrimPrefix(s, "-")
 	}
-	return strings.Replace(s, "-", "−", 1)
+	return figureMinus(s)
 }
+
+// figureMinus makes the hyphen before a number a minus sign.
+func figureMinus(s string) string { return strings.Replace(s, "-", "−", 1) }
 
 // figureTicks marks about so many round values: steps of 1, 2 or 5 times a power
 // of ten, with no more decimals than the step has. (The library's own ticks come
@@ -52,7 +55,7 @@ func (n figureTicks) Ticks(low, high float64) []plot.Tick {
 		factor float64
 		parts  int
 	}{{1, 5}, {2, 4}, {5, 5}} {
-		if rough <= f.factor*power*1.0000001 {
+		if rough <= f.factor*power*1.25 {
 			factor, parts = f.factor, f.parts
 			break
 		}
@@ -97,6 +100,20 @@ func (l figureLogTicks) Ticks(low, high float64) []plot.Tick {
 			if every == 1 || m == 1 {
 				ticks = append(ticks, t)
 			}
+		}
+	}
+	return ticks
+}
+
+// figureUnlabelled keeps another's marks and leaves the labels to the panel below.
+type figureUnlabelled struct{ plot.Ticker }
+
+// Ticks have a blank where a label was, so that they stay large marks.
+func (u figureUnlabelled) Ticks(low, high float64) []plot.Tick {
+	ticks := u.Ticker.Ticks(low, high)
+	for i := range ticks {
+		if !ticks[i].IsMinor() {
+			ticks[i].Label = " "
 		}
 	}
 	return ticks

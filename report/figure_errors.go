@@ -19,8 +19,9 @@ type figureJudged struct {
 	share, U float64
 	zone     float64 // half-width of the acceptance zone; 0 where the guard band takes all of it
 	outcome  decision.Outcome
-	beside   bool    // something beside the error counts against it
-	x, width float64 // its place
+	beside   bool // something beside the error counts against it
+
+	x, left, right float64 // its place, and the edges of it
 }
 
 // errorsFigure shows each error as a share of its limit, range by range.
@@ -33,7 +34,8 @@ func errorsFigure(e *calib.Evaluation) *figureSheet {
 	ticks, edges := figureByRange(steps)
 	panel := newFigurePanel(1, "Range (full scale, rms), steps in the order of the plan", "Error / limit")
 	panel.X.Min, panel.X.Max = edges[0], edges[len(edges)-1]
-	panel.X.Tick.Marker, panel.X.Tick.Length = ticks, 0
+	panel.Y.Tick.Marker = figureTicks(7)
+	panel.X.Tick.Marker, panel.X.Tick.Length, panel.X.Padding = ticks, 0, 4
 	reach, y := 1.3, newFigureSpan()
 	for _, p := range steps {
 		y.add(math.Abs(p.share)+p.U, math.Abs(p.share))
@@ -79,10 +81,10 @@ func errorsFigure(e *calib.Evaluation) *figureSheet {
 			m := figureCrowded(figureOutcome(p.outcome), len(steps))
 			switch {
 			case p.share > reach:
-				m.Shape = figureArrow{}
+				m.Shape, m.Radius = figureArrow{}, 4.5
 				a.mark(m, p.x, reach)
 			case p.share < -reach:
-				m.Shape = figureArrow{down: true}
+				m.Shape, m.Radius = figureArrow{down: true}, 4.5
 				a.mark(m, p.x, -reach)
 			default:
 				if len(steps) <= figureCrowd {
@@ -92,7 +94,7 @@ func errorsFigure(e *calib.Evaluation) *figureSheet {
 			}
 		}
 	})
-	s.panels = []figurePanel{panel}
+	s.panels = []*figurePanel{panel}
 	bars := "its bar the expanded uncertainty as a share of the limit"
 	if len(steps) > figureCrowd {
 		bars = "drawn without its uncertainty, there being so many"
@@ -147,6 +149,7 @@ func figureByRange(steps []figureJudged) (plot.ConstantTicks, []float64) {
 		}
 	}
 	least := room * float64(len(steps))
+	inset := 0.006 * float64(len(steps)) // keeps the marks off the edges
 	every := 1 + (len(starts)-1)/9
 	ticks, edges := plot.ConstantTicks{}, []float64{0}
 	for g, start := range starts {
@@ -155,10 +158,12 @@ func figureByRange(steps []figureJudged) (plot.ConstantTicks, []float64) {
 			end = starts[g+1]
 		}
 		left, width := edges[g], math.Max(float64(end-start), least)
-		each := width / float64(end-start)
+		each := (width - 2*inset) / float64(end-start)
 		for i := start; i < end; i++ {
-			steps[i].x, steps[i].width = left+(float64(i-start)+0.5)*each, each
+			x := left + inset + float64(i-start)*each
+			steps[i].left, steps[i].x, steps[i].right = x, x+each/2, x+each
 		}
+		steps[start].left, steps[end-1].right = left, left+width
 		edges = append(edges, left+width)
 		if g%every == 0 {
 			ticks = append(ticks, plot.Tick{Value: left + width/2, Label: quantity.Format(steps[start].full, 3, "V")})
@@ -174,10 +179,10 @@ func figureByRange(steps []figureJudged) (plot.ConstantTicks, []float64) {
 func figureShadeZone(a *figureArea, steps []figureJudged) {
 	var outline []figureXY
 	for _, p := range steps {
-		outline = append(outline, figureXY{p.x - p.width/2, p.zone}, figureXY{p.x + p.width/2, p.zone})
+		outline = append(outline, figureXY{p.left, p.zone}, figureXY{p.right, p.zone})
 	}
 	for _, p := range slices.Backward(steps) {
-		outline = append(outline, figureXY{p.x + p.width/2, -p.zone}, figureXY{p.x - p.width/2, -p.zone})
+		outline = append(outline, figureXY{p.right, -p.zone}, figureXY{p.left, -p.zone})
 	}
 	a.fill(figureZone, outline...)
 }

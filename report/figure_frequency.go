@@ -33,7 +33,7 @@ func frequencyFigure(e *calib.Evaluation) *figureSheet {
 	s := &figureSheet{name: "frequency.png", title: "Gain and phase against frequency", height: 5.6 * 72}
 	scale, unit := figureUnit(figureLargest(gains), "1")
 	gain := figureResponsePanel(gains, scale, "Gain less 1 ("+unit+")", figureColors[0], draw.CircleGlyph{})
-	s.panels = []figurePanel{gain}
+	s.panels = []*figurePanel{gain}
 	if len(phases) >= 2 {
 		scale, unit := math.Pi/180, "°"
 		if figureLargest(phases) < 0.01 {
@@ -43,7 +43,10 @@ func frequencyFigure(e *calib.Evaluation) *figureSheet {
 	} else {
 		s.title, s.height = "Gain against frequency", 4*72
 	}
-	s.panels[len(s.panels)-1].X.Label.Text = "Frequency"
+	if last := len(s.panels) - 1; last > 0 {
+		s.panels[0].X.Tick.Marker = figureUnlabelled{s.panels[0].X.Tick.Marker}
+	}
+	s.panels[len(s.panels)-1].x = "Frequency"
 	low, high := math.Inf(1), math.Inf(-1)
 	for _, p := range s.panels {
 		low, high = math.Min(low, p.X.Min), math.Max(high, p.X.Max)
@@ -75,7 +78,7 @@ func figureLargest(points []figureResponse) float64 {
 }
 
 // figureResponsePanel draws one quantity against frequency.
-func figureResponsePanel(points []figureResponse, scale float64, label string, c color.NRGBA, shape draw.GlyphDrawer) figurePanel {
+func figureResponsePanel(points []figureResponse, scale float64, label string, c color.NRGBA, shape draw.GlyphDrawer) *figurePanel {
 	panel := newFigurePanel(1, "", label)
 	x, y := newFigureSpan(), newFigureSpan()
 	for _, p := range points {

@@ -38,8 +38,8 @@ func jointFigure(e *calib.Evaluation) *figureSheet {
 	return s
 }
 
-// axes makes the panel for a span of each, zero shown where it is near.
-func jointPanel(o, r figureSpan, unit string) (p figurePanel, scaleO, scaleR float64) {
+// jointPanel makes the panel for a span of each, zero shown where it is near.
+func jointPanel(o, r figureSpan, unit string) (p *figurePanel, scaleO, scaleR float64) {
 	for _, s := range []*figureSpan{&o, &r} {
 		if width := s.high - s.low; s.low > 0 && s.low < 0.5*width || s.high < 0 && -s.high < 0.5*width {
 			s.add(0)
@@ -95,7 +95,7 @@ func (s *figureSheet) region(f *calib.FitResult) {
 		a.up(figureZero, 0)
 		a.mark(point, f.Offset.Value/scaleO, f.SeriesResistance.Value/scaleR)
 	})
-	s.panels = []figurePanel{panel}
+	s.panels = []*figurePanel{panel}
 	s.keys = []figureKey{{words: "fit", mark: point}, {words: "68 % region", shade: figureRegion68}, {words: "95 % region", shade: figureRegion95}}
 	s.caption = fmt.Sprintf("Where offset and series resistance lie together, with probabilities of 68 %% and 95 %%; a slanting ellipse means that the readings part the two less well (correlation %s).", figureNumber(rho, 2))
 	var away []string
@@ -125,8 +125,8 @@ func (s *figureSheet) valley(e *calib.Evaluation) {
 	panel, scaleO, scaleR := jointPanel(o, r, f.Intercept.Unit)
 	at := func(r, aside float64) figureXY { return figureXY{(o0*(1-r/r0) + aside) / scaleO, r / scaleR} }
 	low, high := panel.Y.Min*scaleR, panel.Y.Max*scaleR
-	one := draw.GlyphStyle{Color: figureBlue, Shape: draw.CircleGlyph{}, Radius: 4}
-	other := draw.GlyphStyle{Color: figureRed, Shape: figureSquare, Radius: 4}
+	one := draw.GlyphStyle{Color: figureBlack, Shape: draw.CircleGlyph{}, Radius: 4}
+	other := draw.GlyphStyle{Color: figureBlack, Shape: figureDiamond, Radius: 4}
 	from, to, passes := math.NaN(), math.NaN(), false
 	if c := e.Result.Condition; c != nil {
 		from, to = math.Max(float64(c.From), low), math.Min(float64(c.To), high)
@@ -144,7 +144,7 @@ func (s *figureSheet) valley(e *calib.Evaluation) {
 		a.mark(one, o0/scaleO, 0)
 		a.mark(other, 0, r0/scaleR)
 	})
-	s.panels = []figurePanel{panel}
+	s.panels = []*figurePanel{panel}
 	s.keys = []figureKey{
 		{words: "all an offset: " + figureNumberOf(*f.Intercept), mark: one},
 		{words: "all a series resistance: " + figureNumberOf(*f.AsSeries), mark: other},

@@ -71,7 +71,7 @@ func (a *figureArea) mark(s draw.GlyphStyle, x, y float64) {
 	p := a.at(x, y)
 	if _, _, _, alpha := s.Color.RGBA(); alpha == 0xffff {
 		edge := s
-		edge.Color, edge.Radius = color.White, s.Radius+0.7
+		edge.Color, edge.Radius = color.White, s.Radius+0.6
 		a.DrawGlyph(edge, p)
 	}
 	a.DrawGlyph(s, p)
@@ -79,7 +79,7 @@ func (a *figureArea) mark(s draw.GlyphStyle, x, y float64) {
 
 // words writes at a place, shifted by points.
 func (a *figureArea) words(x, y float64, dx, dy vg.Length, align text.XAlignment, words string) {
-	s := figureText(figureTickSize, xfont.WeightNormal, a.plot.X.Label.TextStyle.Handler)
+	s := figureText(figureTickSize, xfont.WeightNormal, a.plot.X.Tick.Label.Handler)
 	s.XAlign, s.YAlign = align, text.YCenter
 	a.FillText(s, a.at(x, y).Add(vg.Point{X: dx, Y: dy}), words)
 }
@@ -105,7 +105,7 @@ func figureFront(a *figureArea) {
 }
 
 // layers adds layers between grid and frame.
-func (p figurePanel) layers(layers ...figureLayer) {
+func (p *figurePanel) layers(layers ...figureLayer) {
 	p.Add(figureLayer(figureBack))
 	for _, l := range layers {
 		p.Add(l)

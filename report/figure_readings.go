@@ -41,9 +41,10 @@ func readingsFigure(e *calib.Evaluation) *figureSheet {
 	upper.Y.Min, upper.Y.Max = y.decades()
 	upper.Y.Scale, upper.Y.Tick.Marker = plot.LogScale{}, figureLogTicks{"V", 5}
 	lower.X.Min, lower.X.Max = upper.X.Min, upper.X.Max
-	for _, p := range []figurePanel{upper, lower} {
+	for _, p := range []*figurePanel{upper, lower} {
 		p.X.Scale, p.X.Tick.Marker = plot.LogScale{}, figureLogTicks{"V", 7}
 	}
+	upper.X.Tick.Marker = figureUnlabelled{upper.X.Tick.Marker}
 	lowest, judged := figureShares(lower, points)
 
 	gain, words := 1.0, "reading = voltage applied"
@@ -80,10 +81,13 @@ func readingsFigure(e *calib.Evaluation) *figureSheet {
 			a.mark(m, p.applied, 100*p.share)
 		}
 	})
-	s.panels = []figurePanel{upper, lower}
+	s.panels = []*figurePanel{upper, lower}
 	s.caption = "Above, each step's reading: points leave the line where an offset and a series resistance count, at the low end. " +
 		fmt.Sprintf("Below, its error in percent of the reading expected%s, on a scale that is linear within ±%s %% and logarithmic beyond.",
 			figureBars(len(points)), figureNumber(lowest, max(0, -int(math.Floor(math.Log10(lowest)+1e-9)))))
+	if e.Plan.Detector.Reads == plan.InPhase {
+		s.caption += " With the reference turned by 180° a gain shows on the same side and an offset on the other."
+	}
 	if n := len(e.Result.Steps) - len(points); n > 0 {
 		s.caption += fmt.Sprintf(" %s with nothing applied, or read as exactly zero, cannot stand on these scales.", figureCounted(n, "step"))
 	}
@@ -117,7 +121,7 @@ func figureReadings(e *calib.Evaluation) []figureReading {
 
 // figureShares sets the vertical axis of the lower panel: bent at the power of
 // ten below the smallest limit, or the smallest error bar.
-func figureShares(panel figurePanel, points []figureReading) (bend float64, judged bool) {
+func figureShares(panel *figurePanel, points []figureReading) (bend float64, judged bool) {
 	least, y := math.Inf(1), newFigureSpan()
 	for _, p := range points {
 		if p.limit > 0 {

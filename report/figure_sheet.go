@@ -2,6 +2,7 @@ package report
 
 import (
 	"image/color"
+	"math"
 
 	xfont "golang.org/x/image/font"
 	"gonum.org/v1/plot"
@@ -18,14 +19,16 @@ type figureSheet struct {
 	height               vg.Length
 	keys                 []figureKey
 	note                 string
-	panels               []figurePanel
+	panels               []*figurePanel
 	beside               bool
 }
 
-// figurePanel is one plot with its share of the sheet.
+// figurePanel is one plot with its share of the sheet. Its words are its own and
+// not the plot's, which places those of a logarithmic axis as if it were linear.
 type figurePanel struct {
 	*plot.Plot
-	share float64
+	share       float64
+	title, x, y string
 }
 
 // figureKey is an entry of the key: a mark, a line, a shaded patch, or a patch with a line.
@@ -37,31 +40,55 @@ type figureKey struct {
 }
 
 // newFigurePanel is a plot without anything in it, in the look of all figures.
-func newFigurePanel(share float64, x, y string) figurePanel {
+func newFigurePanel(share float64, x, y string) *figurePanel {
 	p := plot.New()
-	p.X.Label.Text, p.Y.Label.Text = x, y
 	p.X.Tick.Marker, p.Y.Tick.Marker = figureTicks(6), figureTicks(5)
-	p.Title.Padding = 3
 	for _, a := range []*plot.Axis{&p.X, &p.Y} {
 		a.Padding, a.Width, a.Tick.Width = 0, 0, 0.7
 		a.Color, a.Tick.Color = figureInk, figureInk
 		a.Tick.Length = 5
-		a.Label.Padding = 3
 	}
-	return figurePanel{p, share}
+	return &figurePanel{Plot: p, share: share, x: x, y: y}
 }
 
-// letter sets all letters of a panel.
-func (p figurePanel) letter(handler text.Handler) {
-	restyle := func(s *text.Style, size vg.Length, weight xfont.Weight) {
-		x, y := s.XAlign, s.YAlign
-		*s = figureText(size, weight, handler)
-		s.XAlign, s.YAlign = x, y
-	}
-	restyle(&p.Title.TextStyle, figureLabelSize, xfont.WeightNormal)
+// letter sets the letters of a panel.
+func (p *figurePanel) letter(handler text.Handler) {
 	for _, a := range []*plot.Axis{&p.X, &p.Y} {
-		restyle(&a.Label.TextStyle, figureLabelSize, xfont.WeightNormal)
-		restyle(&a.Tick.Label, figureTickSize, xfont.WeightNormal)
+		x, y := a.Tick.Label.XAlign, a.Tick.Label.YAlign
+		a.Tick.Label = figureText(figureTickSize, xfont.WeightNormal, handler)
+		a.Tick.Label.XAlign, a.Tick.Label.YAlign = x, y
+	}
+}
+
+// figureMargin is the room for a line of words beside a panel.
+const figureMargin = figureLabelSize + 6
+
+// inside is what the words of a panel leave of its tile.
+func (p *figurePanel) inside(c draw.Canvas) draw.Canvas {
+	margin := func(words string) vg.Length {
+		if words == "" {
+			return 0
+		}
+		return figureMargin
+	}
+	return draw.Crop(c, margin(p.y), 0, margin(p.x), -margin(p.title))
+}
+
+// words writes them: along the axes and above, in the middle of the data area.
+func (p *figurePanel) words(tile draw.Canvas, handler text.Handler) {
+	style := figureText(figureLabelSize, xfont.WeightNormal, handler)
+	style.XAlign = text.XCenter
+	data := p.DataCanvas(p.inside(tile))
+	c := data.Center()
+	if p.title != "" {
+		tile.FillText(style, vg.Point{X: c.X, Y: data.Max.Y + 6}, p.title)
+	}
+	if p.x != "" {
+		tile.FillText(style, vg.Point{X: c.X, Y: tile.Min.Y + 3}, p.x)
+	}
+	if p.y != "" {
+		style.Rotation = math.Pi / 2
+		tile.FillText(style, vg.Point{X: tile.Min.X + figureLabelSize, Y: c.Y}, p.y)
 	}
 }
 
@@ -83,17 +110,21 @@ func (s *figureSheet) draw(c draw.Canvas, handler text.Handler) {
 		p.letter(handler)
 	}
 	for i, tile := range s.tiles(c) {
-		s.panels[i].Draw(tile)
+		s.panels[i].Draw(s.panels[i].inside(tile))
+		s.panels[i].words(tile, handler)
 	}
 }
 
 // drawKeys fills rows from the left and gives their height.
 func (s *figureSheet) drawKeys(c draw.Canvas, handler text.Handler) vg.Length {
-	const swatch, gap, between, row = 24, 5, 16, figureLabelSize + 5
+	const gap, between, row = 5, 16, figureLabelSize + 5
 	style := figureText(figureLabelSize, xfont.WeightNormal, handler)
 	x, y := c.Min.X, c.Max.Y-figureLabelSize
 	for _, k := range s.keys {
-		width := style.Width(k.words)
+		width, swatch := style.Width(k.words), vg.Length(24)
+		if k.line.Width == 0 && k.shade == nil {
+			swatch = 8 // a mark alone
+		}
 		if x > c.Min.X && x+swatch+gap+width > c.Max.X {
 			x, y = c.Min.X, y-row
 		}
@@ -137,7 +168,7 @@ func (s *figureSheet) tiles(c draw.Canvas) []draw.Canvas {
 			t.Min.Y, t.Max.Y = c.Max.Y-at-height, c.Max.Y-at
 			at += height + gap
 		}
-		d := p.DataCanvas(t)
+		d := p.DataCanvas(p.inside(t))
 		m := margins{d.Min.X - t.Min.X, t.Max.X - d.Max.X, d.Min.Y - t.Min.Y, t.Max.Y - d.Max.Y}
 		most = margins{max(most.left, m.left), max(most.right, m.right), max(most.bottom, m.bottom), max(most.top, m.top)}
 		tiles[i], need[i] = t, m

@@ -37,13 +37,13 @@ func unexplainedFigure(e *calib.Evaluation) *figureSheet {
 	if near := figureNearZero(points); len(near) > 0 && e.Result.Fit.Separable {
 		zoom := newFigureView(near, line)
 		s.panels = append(s.panels, figureLeftPanel(zoom, line, "small currents"))
-		s.panels[1].Y.Label.Text = ""
+		s.panels[1].y = ""
 		if _, unit := figureUnit(zoom.largest(), "V"); unit != figureUnitOf(all) {
-			s.panels[1].Y.Label.Text = "Left unexplained (" + unit + ")"
+			s.panels[1].y = "Left unexplained (" + unit + ")"
 		}
 		s.caption += " The right panel shows the small currents larger."
 	} else {
-		s.panels[0].Title.Text = ""
+		s.panels[0].title = ""
 	}
 	if !e.Result.Fit.Separable {
 		s.note = "An offset and a series resistance cannot be told apart by these readings."
@@ -121,10 +121,10 @@ type figureView struct {
 }
 
 // newFigureView chooses the scale by the line and shows the points whose error
-// bars are no larger than a quarter of it; every one of these is in the picture,
+// bars are small against it; every one of these is in the picture,
 // an outlier too.
 func newFigureView(points []figureLeft, line figureDeciding) figureView {
-	const largestBar = 0.25 // half of an error bar, over the height of the picture
+	const largestBar = 0.12 // half of an error bar, over the height of the picture
 	var v figureView
 	x := newFigureSpan()
 	x.add(0)
@@ -179,7 +179,7 @@ func (v *figureView) moveApart(line figureDeciding) {
 			k++
 		}
 		n := k - i
-		step := math.Min(0.02, 0.1/float64(n)) * width
+		step := math.Min(0.015, 0.06/float64(n)) * width
 		for j := range n {
 			dx := (float64(j) - float64(n-1)/2) * step
 			v.points[i+j].current += dx
@@ -207,14 +207,14 @@ func figureDifferent(points []figureLeft, line figureDeciding) []float64 {
 }
 
 // figureLeftPanel draws one view.
-func figureLeftPanel(v figureView, line figureDeciding, title string) figurePanel {
+func figureLeftPanel(v figureView, line figureDeciding, title string) *figurePanel {
 	scaleX, unitX := figureUnit(math.Max(math.Abs(v.left), math.Abs(v.right)), "A")
 	scaleY, unitY := figureUnit(v.largest(), "V")
 	panel := newFigurePanel(1, "Current in the arm (rms, "+unitX+")", "Left unexplained ("+unitY+")")
-	panel.Title.Text = title
+	panel.title = title
 	panel.X.Min, panel.X.Max = v.left/scaleX, v.right/scaleX
 	panel.Y.Min, panel.Y.Max = v.low/scaleY, v.high/scaleY
-	panel.X.Tick.Marker = figureTicks(4)
+	panel.X.Tick.Marker = figureTicks(5)
 	at := func(x, y float64) figureXY { return figureXY{x / scaleX, y / scaleY} }
 	panel.layers(func(a *figureArea) {
 		if len(v.intercepts) == 1 {
@@ -228,6 +228,9 @@ func figureLeftPanel(v figureView, line figureDeciding, title string) figurePane
 	}, func(a *figureArea) {
 		for _, p := range v.points {
 			m := figureCrowded(figureMark(p.amplitude), len(v.points))
+			if v.spread {
+				m.Radius *= 0.75
+			}
 			if len(v.points) <= figureCrowd {
 				a.bar(figureLine(m.Color, figureBarred), p.current/scaleX, (p.value-p.U)/scaleY, (p.value+p.U)/scaleY)
 			}
@@ -249,9 +252,9 @@ var figureIntercept = draw.GlyphStyle{Color: figureBlack, Shape: figureStar, Rad
 func figureNumberOf(x calib.Estimate) string {
 	switch x.Unit {
 	case "ohm":
-		return quantity.Concise(x.Value, x.U, "Ω")
+		return figureMinus(quantity.Concise(x.Value, x.U, "Ω"))
 	case "1":
-		return quantity.SharePlusMinus(x.Value, x.U) + " of range"
+		return figureMinus(quantity.SharePlusMinus(x.Value, x.U)) + " of range"
 	}
-	return quantity.Concise(x.Value, x.U, x.Unit)
+	return figureMinus(quantity.Concise(x.Value, x.U, x.Unit))
 }

@@ -69,7 +69,7 @@ func HTML(w io.Writer, e *calib.Evaluation, figures []Figure) error {
 		p.Title = "Calibration of a synchronous detector"
 	}
 	for _, f := range e.Result.Findings {
-		f.Text, f.Do = minus(f.Text), minus(f.Do)
+		f.Text, f.Do = typeset(f.Text), typeset(f.Do)
 		if f.Kind == "touch voltage" || f.Kind == "rating exceeded" {
 			p.Cautions = append(p.Cautions, f)
 		} else {
@@ -110,7 +110,7 @@ func identity(p *plan.Plan) []pair {
 	}
 	frequencies := make([]string, len(p.Frequencies))
 	for i, f := range p.Frequencies {
-		frequencies[i] = hertz(f)
+		frequencies[i] = quantity.Plain(f, "Hz")
 	}
 	temperature := fmt.Sprintf("%.4g °C", p.Temperature.X)
 	switch {
@@ -124,7 +124,7 @@ func identity(p *plan.Plan) []pair {
 		{"Detector", p.Detector.Description}, {"Serial", p.Detector.Serial}, {"Reads", p.Detector.Reads},
 		{"Frequency", calib.List(frequencies)}, {"Date", date}, {"Condition", p.Condition},
 		{"Operator", p.Operator}, {"Customer", p.Customer}, {"Procedure", p.Procedure},
-		{"Room temperature", minus(temperature)}, {"Humidity", p.Humidity}, {"Warm-up", p.WarmUp}, {"Notes", p.Notes},
+		{"Room temperature", typeset(temperature)}, {"Humidity", p.Humidity}, {"Warm-up", p.WarmUp}, {"Notes", p.Notes},
 	} {
 		if item.Text != "" {
 			out = append(out, item)
@@ -136,22 +136,29 @@ func identity(p *plan.Plan) []pair {
 // voltages says what the voltages of the page are.
 func voltages(p *plan.Plan) string {
 	if p.Detector.Displays == "rms" {
-		return "All voltages are rms, but amplitudes, which are as the generator shows them."
+		return "All voltages are rms; only the amplitudes of steps are written as the generator shows them."
 	}
-	return fmt.Sprintf("This detector displays %s values. All voltages in this report are rms all the same, but two: ranges have the names that the detector gives them, "+
-		"and amplitudes are as the generator shows them.", p.Detector.Displays)
+	return fmt.Sprintf("All voltages in this report are rms, although this detector displays %s values; "+
+		"only its ranges have the names that it gives them, and the amplitudes of steps are written as the generator shows them.", p.Detector.Displays)
 }
 
-// negative finds the hyphen of a negative number.
-var negative = regexp.MustCompile(`(^|[ (±])-(\d)`)
+var (
+	negative = regexp.MustCompile(`(^|[ (±])-(\d)`)
+	united   = regexp.MustCompile(`([\d)]) ((?:ppm|%|°C|[fpnµmkMGT]?(?:V|Ω|A|F|Hz|H|s|W|rad))(?:$|[^\pL]))`)
+)
 
-// minus puts the minus sign in place of the hyphen before numbers.
-func minus(s string) string { return negative.ReplaceAllString(s, "${1}−${2}") }
+// typeset puts the minus sign in place of the hyphen before numbers, and spaces
+// that no line breaks at within quantities.
+func typeset(s string) string {
+	s = negative.ReplaceAllString(s, "${1}−${2}")
+	s = united.ReplaceAllString(s, "${1}\u00a0${2}")
+	return strings.ReplaceAll(s, " ± ", "\u00a0±\u00a0")
+}
 
 // shown writes a voltage, or nothing for what is not known.
 func shown(x float64, digits int) string {
 	if math.IsNaN(x) {
 		return ""
 	}
-	return minus(quantity.Format(x, digits, "V"))
+	return typeset(quantity.Format(x, digits, "V"))
 }

@@ -36,7 +36,7 @@ func model(p *plan.Plan) string {
 	const drop = "V is the drop, which the unknown series resistance r is part of; g is the detector's gain, o its offset and e the scatter. "
 	switch p.Detector.Reads {
 	case plan.TwoPhase:
-		return "z = g·V·exp(j(φ + arg V − θ)) + o + e, with V the size of the drop. " + drop +
+		return "z = g·|V|·exp(j(φ + arg V − θ)) + o + e. " + drop +
 			"φ is the phase between generator and reference, fitted for each frequency, and θ the phase that a step sets. The error is along the expected reading; what lies across it is the phase error."
 	case plan.Magnitude:
 		return "r = mean of |g·V + o + e|. " + drop + "Noise makes a magnitude read high (Rice's distribution); the model holds that mean, and the error has it taken off."

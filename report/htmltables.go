@@ -9,6 +9,7 @@ import (
 
 	"rungproof/calib"
 	"rungproof/calib/decision"
+	"rungproof/calib/plan"
 	"rungproof/calib/quantity"
 )
 
@@ -17,11 +18,11 @@ func gainTables(e *calib.Evaluation) []grid {
 	r, toRMS := e.Result, e.Plan.Detector.ToRMS
 	out := []grid{gainTable(e, r.ByRange, "Gain by range", "range", func(g calib.KeyGain) string { return displayed(g.Range / toRMS) })}
 	if r.ByFreq != nil {
-		g := gainTable(e, r.ByFreq, "Gain by frequency", "frequency", func(g calib.KeyGain) string { return hertz(g.Frequency) })
+		g := gainTable(e, r.ByFreq, "Gain by frequency", "frequency", func(g calib.KeyGain) string { return quantity.Plain(g.Frequency, "Hz") })
 		g.addFilled(texts("phase against the reference ± U", "number", func(i int) string {
 			for _, f := range r.Fit.Phase {
 				if f.Frequency == r.ByFreq.Gain[i].Frequency {
-					return minus(sizeOf(f.Estimate, r.CoverageFactor))
+					return typeset(sizeOf(f.Estimate, r.CoverageFactor))
 				}
 			}
 			return ""
@@ -36,7 +37,7 @@ func gainTable(e *calib.Evaluation, gains *calib.Gains, caption, key string, nam
 	g := grid{Caption: caption, Rows: len(all)}
 	g.addFilled(
 		texts(key, "number", func(i int) string { return name(all[i]) }),
-		texts("deviation from 1 ± U", "number", func(i int) string { return minus(gainDeviation(all[i].Estimate, k)) }),
+		texts("deviation from 1 ± U", "number", func(i int) string { return typeset(gainDeviation(all[i].Estimate, k)) }),
 		texts("U from the readings alone", "number", func(i int) string { return spread(all[i].Estimate, k) }),
 	)
 	judged := false
@@ -83,11 +84,11 @@ func stepTable(e *calib.Evaluation) grid {
 		texts("settings", "words", func(i int) string { return strings.Join(benchSettings(p, &p.Steps[all[i].Index]), ", ") }),
 		texts("range", "number", func(i int) string { return displayed(all[i].Range / toRMS) }),
 	)
-	if p.Detector.Reads != "magnitude" {
-		g.addFilled(texts("ref. phase", "number", func(i int) string { return minus(degrees(p.Steps[all[i].Index].Phase)) }))
+	if p.Detector.Reads == plan.InPhase || varies(p, func(s *plan.Step) bool { return s.Phase != 0 }) {
+		g.addFilled(texts("ref. phase", "number", func(i int) string { return typeset(degrees(p.Steps[all[i].Index].Phase)) }))
 	}
 	number := func(head string, of func(s *calib.StepResult) string) column {
-		return texts(head, "number", func(i int) string { return minus(of(&all[i])) })
+		return texts(head, "number", func(i int) string { return typeset(of(&all[i])) })
 	}
 	g.addFilled(
 		number("expected (u)", func(s *calib.StepResult) string { return quantity.Concise(s.Expected, s.UExpected, "V") }),
@@ -112,7 +113,7 @@ func stepTable(e *calib.Evaluation) grid {
 		number("n", func(s *calib.StepResult) string { return fmt.Sprint(s.Repeats) }),
 		texts("flags", "words", func(i int) string { return flags(&all[i]) }),
 	)
-	g.Notes = append(g.Notes, fmt.Sprintf("Amplitudes are as the generator shows them: %s, for %s. The figures in parentheses are the standard uncertainties of the last digits; n is the number of readings.",
+	g.Notes = append(g.Notes, fmt.Sprintf("The generator shows its amplitudes as %s, for %s. The figures in parentheses are the standard uncertainties of the last digits; n is the number of readings.",
 		p.Generator.ShownAs, into(p.Generator.ShownFor)))
 	if e.Result.Fit.Separable {
 		g.Notes = append(g.Notes, "The expected reading is for the wiring as the plan states it. The error is taken with the fitted series resistance added to it, which is the bench's; so it need not be the plain difference.")
@@ -160,13 +161,13 @@ func inputTable(e *calib.Evaluation) grid {
 	g := grid{Rows: len(all)}
 	g.addFilled(
 		texts("input", "words", func(i int) string { return all[i].Name }),
-		texts("stated (u)", "number", func(i int) string { return minus(input(all[i].Value, all[i].U, all[i].Unit)) }),
-		texts("as fitted (u)", "number", func(i int) string { return minus(input(all[i].Fitted, all[i].UFitted, all[i].Unit)) }),
+		texts("stated (u)", "number", func(i int) string { return typeset(input(all[i].Value, all[i].U, all[i].Unit)) }),
+		texts("as fitted (u)", "number", func(i int) string { return typeset(input(all[i].Fitted, all[i].UFitted, all[i].Unit)) }),
 		texts("moved by", "number", func(i int) string {
 			if all[i].U == 0 {
 				return ""
 			}
-			return minus(fmt.Sprintf("%.2f u", (all[i].Fitted-all[i].Value)/all[i].U))
+			return typeset(hundredths((all[i].Fitted-all[i].Value)/all[i].U) + " u")
 		}),
 		texts("from", "words", func(i int) string { return all[i].Standard }),
 	)

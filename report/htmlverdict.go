@@ -26,11 +26,11 @@ func decided(e *calib.Evaluation) string {
 		}
 	}
 	if at != nil {
-		return minus(bySteps(e, at, count))
+		return typeset(bySteps(e, at, count))
 	}
 	for _, g := range r.ByRange.Gain {
 		if g.Outcome == r.Verdict {
-			return minus(fmt.Sprintf("The steps are good; the gain of the %s range decides: it is off by %s, with a limit of %s.",
+			return typeset(fmt.Sprintf("The steps are good; the gain of the %s range decides: it is off by %s, with a limit of %s.",
 				displayed(g.Range/e.Plan.Detector.ToRMS), gainDeviation(g.Estimate, r.CoverageFactor), quantity.Share(g.Limit, 2)))
 		}
 	}
@@ -59,7 +59,11 @@ func bySteps(e *calib.Evaluation, at *calib.StepResult, count int) string {
 		say = doubt
 	}
 	n := len(e.Result.Steps)
-	which := fmt.Sprintf("%d of %d steps come out as %s. The one nearest to its limit, or farthest beyond, is", count, n, at.Outcome)
+	most := "nearest to"
+	if at.Outcome == decision.Fail || at.Outcome == decision.ConditionalFail {
+		most = "farthest beyond"
+	}
+	which := fmt.Sprintf("%d of %d steps come out as %s. The one %s its limit is", count, n, at.Outcome, most)
 	switch {
 	case n == 1:
 		which = "The only step is"
@@ -68,7 +72,7 @@ func bySteps(e *calib.Evaluation, at *calib.StepResult, count int) string {
 	case count == 1:
 		which = fmt.Sprintf("One of %d steps decides:", n)
 	}
-	return fmt.Sprintf("%s %s, %s: %s.", which, at.ID, pressing(at), say)
+	return fmt.Sprintf("%s step %s, %s: %s.", which, at.ID, pressing(at), say)
 }
 
 // pressing is a step's error, or its phase where that is nearer to its limit.
@@ -138,7 +142,7 @@ func summary(e *calib.Evaluation) grid {
 		if deviation {
 			x.Value--
 		}
-		return minus(sizeOf(x, k))
+		return typeset(sizeOf(x, k))
 	}
 	g := grid{Rows: len(lines), Columns: []column{
 		texts("", "words", func(i int) string { return lines[i].name }),
@@ -151,7 +155,7 @@ func summary(e *calib.Evaluation) grid {
 				x.Value--
 			}
 			if !x.Known || math.Abs(x.Value) <= k*x.U {
-				return "no, within U of none"
+				return "no, less than U"
 			}
 			return "yes"
 		}),
@@ -189,7 +193,7 @@ func separation(e *calib.Evaluation) []string {
 		} else {
 			say += "No series resistance makes all steps pass."
 		}
-		notes = append(notes, minus(say))
+		notes = append(notes, typeset(say))
 	}
 	if r.ByRange.Used && e.Plan.Fit.Gain == "common" {
 		notes = append(notes, "One gain for all ranges does not fit: all of this, the errors and the verdict come from the fit with a gain for each range, which are listed under Gains.")
@@ -222,10 +226,13 @@ func fitness(r *calib.Result) string {
 	}
 	say += "."
 	if rho, ok := f.Correlation["offset,series_resistance"]; ok {
-		say += fmt.Sprintf(" Correlation of offset and series resistance: %.2f.", math.Round(100*float64(rho))/100+0)
+		say += " Correlation of offset and series resistance: " + hundredths(float64(rho)) + "."
 	}
-	return minus(say)
+	return typeset(say)
 }
+
+// hundredths is a number with two decimals, zero without a sign.
+func hundredths(x float64) string { return fmt.Sprintf("%.2f", math.Round(100*x)/100+0) }
 
 // chance is a probability for people.
 func chance(p float64) string {

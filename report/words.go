@@ -33,7 +33,7 @@ func benchSettings(p *plan.Plan, s *plan.Step) []string {
 		}
 	}
 	if len(p.Frequencies) > 1 {
-		parts = append(parts, hertz(s.Frequency))
+		parts = append(parts, quantity.Plain(s.Frequency, "Hz"))
 	}
 	if varies(p, func(o *plan.Step) bool { return o.TimeConstant != s.TimeConstant }) {
 		parts = append(parts, "time constant "+quantity.Format(s.TimeConstant, 3, "s"))
@@ -80,12 +80,6 @@ func sizeOf(e calib.Estimate, k float64) string {
 func gainDeviation(e calib.Estimate, k float64) string {
 	e.Value--
 	return sizeOf(e, k)
-}
-
-// hertz is a frequency with no more digits than it has.
-func hertz(f float64) string {
-	scale, unit := quantity.Prefix(f, "Hz")
-	return fmt.Sprintf("%.6g %s", f/scale, unit)
 }
 
 // degrees is an angle in whole or broken degrees: 180°.

@@ -19,13 +19,14 @@ func RiceMean(s, sigma float64) (mean, slope float64) {
 		}
 		return s, 1
 	}
-	x := s * s / (4 * sigma * sigma)
+	a := s / sigma
+	x := a * a / 4
 	if x > 1e12 { // the terms below are σ²/2|s| beside |s|: under 1e-12
 		return math.Abs(s), math.Copysign(1, s)
 	}
 	i0, i1 := scaledBessel(x)
 	root := math.Sqrt(math.Pi / 2)
-	return sigma * root * ((1+2*x)*i0 + 2*x*i1), s / (2 * sigma) * root * (i0 + i1)
+	return sigma * root * ((1+2*x)*i0 + 2*x*i1), a / 2 * root * (i0 + i1)
 }
 
 // RiceVariance is the variance of |s + noise|, in V². The mean square being

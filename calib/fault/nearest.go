@@ -5,9 +5,10 @@ import "strings"
 // Nearest is the known word that a mistyped one was most likely meant to be,
 // or "" where none is near: the smallest number of letters to change, insert,
 // drop or swap (the distance of Damerau 1964, restricted form), at most a third
-// of the word and one more.
+// of the word and one more, and never all of it.
 func Nearest(word string, known []string) string {
-	best, bestDistance := "", len([]rune(word))/3+2
+	letters := len([]rune(word))
+	best, bestDistance := "", min(letters/3+2, letters)
 	for _, k := range known {
 		if d := distance(strings.ToLower(word), strings.ToLower(k)); d < bestDistance {
 			best, bestDistance = k, d

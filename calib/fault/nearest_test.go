@@ -13,7 +13,9 @@ func TestNearest(t *testing.T) {
 		"tap":       "tap",
 		"xyz":       "",
 		"capacity":  "",
-		"":          "u",
+		"":          "",
+		"q":         "", // a wrong letter by itself is near to nothing
+		"K":         "k",
 	} {
 		if got := Nearest(word, known); got != want {
 			t.Errorf("%q: %q, want %q", word, got, want)

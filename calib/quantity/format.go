@@ -57,6 +57,15 @@ func Format(x float64, digits int, unit string) string {
 	return fixed(x/scale, place(x/scale, digits)) + behind(prefixed)
 }
 
+// Plain writes x with no more digits than it has, six at most: "137 Hz", "1.7 kHz", "100 mV".
+func Plain(x float64, unit string) string {
+	number, unit, _ := strings.Cut(Format(x, 6, unit), " ")
+	if strings.Contains(number, ".") {
+		number = strings.TrimRight(strings.TrimRight(number, "0"), ".")
+	}
+	return number + behind(unit)
+}
+
 // Concise writes a value with its standard uncertainty, to two digits, in
 // parentheses: "1.00021(15) MΩ", "119.8(15) nV". The digits count in the last
 // place of the value, with a point among them or not (GUM 7.2.2, second form).
@@ -125,29 +134,16 @@ func place(x float64, digits int) int {
 
 // fixed writes y to a number of decimals, which may be negative. A zero has no sign.
 func fixed(y float64, place int) string {
-	s := ""
-	if place >= 0 {
-		s = strconv.FormatFloat(y, 'f', place, 64)
-	} else {
-		tens := math.Pow(10, float64(-place))
-		s = strconv.FormatFloat(math.RoundToEven(y/tens)*tens, 'f', 0, 64)
-	}
+	zeros := max(-place, 0)
+	s := strconv.FormatFloat(y/math.Pow(10, float64(zeros)), 'f', max(place, 0), 64)
 	if strings.Trim(s, "-0.") == "" {
 		return strings.TrimPrefix(s, "-")
 	}
-	return s
+	return s + strings.Repeat("0", zeros)
 }
 
 // rounded is the number that fixed writes.
 func rounded(y float64, place int) float64 {
 	x, _ := strconv.ParseFloat(fixed(y, place), 64) // its text is a number
 	return x
-}
-
-// Plain writes a number with an SI prefix and no more digits than it has, six at
-// most: "137 Hz", "1.7 kHz", "100 mV".
-func Plain(x float64, unit string) string {
-	rounded, _ := strconv.ParseFloat(strconv.FormatFloat(x, 'e', 5, 64), 64)
-	scale, prefixed := Prefix(rounded, unit)
-	return strconv.FormatFloat(scaled(rounded, 1/scale), 'g', 6, 64) + behind(prefixed)
 }

@@ -29,7 +29,9 @@ const (
 	TemperatureCoefficient             // 1/K
 	Ratio                              // 1; written in %, ‰, ppm or as a bare number
 
-	temperatureDifference // K; of an uncertainty
+	// Of uncertainties only.
+	share                 // a Ratio that says %, ‰ or ppm
+	temperatureDifference // K
 )
 
 // unit is one way to write a kind's unit.
@@ -56,6 +58,8 @@ func amplitude(text string, c Convention) unit {
 
 func plain(text string, scale float64) unit { return unit{text: text, scale: scale, power: 1} }
 
+var shares = []unit{plain("%", 0.01), plain("‰", 0.001), plain("ppm", 1e-6)}
+
 var kinds = [...]kind{
 	Voltage: {"a voltage", "V", "70.7 µV", []unit{si("V"),
 		amplitude("Vrms", RMS), amplitude("Vpk", Peak), amplitude("Vp", Peak), amplitude("Vpp", PeakToPeak)}},
@@ -76,7 +80,8 @@ var kinds = [...]kind{
 	CapacitancePerLength:  {"a capacitance per length", "F/m", "100 pF/m", []unit{si("F/m")}},
 	TemperatureCoefficient: {"a temperature coefficient", "1/K", "25 ppm/K", []unit{
 		plain("ppm/K", 1e-6), plain("ppm/°C", 1e-6), plain("%/K", 0.01), plain("%/°C", 0.01), plain("/K", 1), plain("1/K", 1), plain("/°C", 1)}},
-	Ratio: {"a share", "1", "0.1 %", []unit{plain("%", 0.01), plain("‰", 0.001), plain("ppm", 1e-6), plain("", 1)}},
+	Ratio: {"a share", "1", "0.1 %", append(shares, plain("", 1))},
+	share: {"a share", "1", "0.1 %", shares},
 }
 
 // String is the kind with its article, for messages: "a voltage".

@@ -2,6 +2,7 @@ package quantity
 
 import (
 	"math"
+	"strings"
 	"testing"
 )
 
@@ -52,6 +53,9 @@ func TestParse(t *testing.T) {
 		{".5 V", Voltage, Value{X: 0.5}},
 		{"5. V", Voltage, Value{X: 5}},
 		{"0 V", Voltage, Value{}},
+		{"0." + strings.Repeat("0", 400) + "1e401 V", Voltage, Value{X: 1}},
+		{"1" + strings.Repeat("0", 400) + "e-400 V", Voltage, Value{X: 1}},
+		{"0." + strings.Repeat("3", 400) + "(0.1) V", Voltage, Value{X: 1.0 / 3, U: 0.1, HasU: true}},
 		{"1e-6 V", Voltage, Value{X: 1e-6}},
 		{"1E6 V", Voltage, Value{X: 1e6}},
 		{"1e+6 V", Voltage, Value{X: 1e6}},

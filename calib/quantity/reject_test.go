@@ -1,37 +1,53 @@
 package quantity
 
 import (
-	"strings"
+	"strconv"
 	"testing"
 )
 
+// asked is how the message says what would be accepted.
+var asked = map[Kind]string{
+	Voltage:     `a voltage is written like "70.7 µV"`,
+	Resistance:  `a resistance is written like "10 kΩ"`,
+	Capacitance: `a capacitance is written like "25 pF"`,
+	Frequency:   `a frequency is written like "137 Hz"`,
+	Time:        `a time is written like "300 ms"`,
+	Angle:       `an angle is written like "90 deg"`,
+	Temperature: `a temperature is written like "23 °C"`,
+	Ratio:       `a share is written like "0.1 %"`,
+}
+
 func TestParseRejects(t *testing.T) {
+	const (
+		noNumber      = "does not begin with a number"
+		noUnit        = "has no unit"
+		comma         = "has a comma where a decimal point would be right"
+		noUncertainty = "has no uncertainty that can be read; 1.00021(15) has one, behind the number and before its exponent"
+	)
 	for _, c := range []struct {
 		text string
 		kind Kind
-		want string // part of the message
+		want string // of the message, between the text and what would be accepted
 	}{
-		{"", Voltage, `nothing is written; a voltage is written like "70.7 µV"`},
-		{" \u00a0 ", Voltage, "nothing is written"},
-		{"V", Voltage, "does not begin with a number"},
-		{"NaN V", Voltage, "does not begin with a number"},
-		{"Inf V", Voltage, "does not begin with a number"},
-		{"-inf V", Voltage, "does not begin with a number"},
-		{"--1 V", Voltage, "does not begin with a number"},
-		{". V", Voltage, "does not begin with a number"},
-		{"e5 V", Voltage, "does not begin with a number"},
-		{"about 5 V", Voltage, "does not begin with a number"},
-		{"(15) V", Voltage, "does not begin with a number"},
+		{"V", Voltage, noNumber},
+		{"NaN V", Voltage, noNumber},
+		{"Inf V", Voltage, noNumber},
+		{"-inf V", Voltage, noNumber},
+		{"--1 V", Voltage, noNumber},
+		{". V", Voltage, noNumber},
+		{"e5 V", Voltage, noNumber},
+		{"about 5 V", Voltage, noNumber},
+		{"(15) V", Voltage, noNumber},
 
-		{"10", Resistance, `"10" has no unit; a resistance is written like "10 kΩ"`},
-		{"1.00021(15)", Resistance, "has no unit"},
-		{"3 kg", Resistance, `"3 kg" has "kg" for a unit; a resistance is written like "10 kΩ"`},
+		{"10", Resistance, noUnit},
+		{"1.00021(15)", Resistance, noUnit},
+		{"3 kg", Resistance, `has "kg" for a unit`},
 		{"3 V", Resistance, `has "V" for a unit`},
 		{"3 Ω", Voltage, `has "Ω" for a unit`},
 		{"10 xΩ", Resistance, `has "xΩ" for a unit`},
 		{"10 kkΩ", Resistance, `has "kkΩ" for a unit`},
 		{"10 k", Resistance, `has "k" for a unit`},
-		{"5 K", Temperature, `has "K" for a unit; a temperature is written like "23 °C"`},
+		{"5 K", Temperature, `has "K" for a unit`},
 		{"5 m°C", Temperature, `has "m°C" for a unit`},
 		{"5 mdeg", Angle, `has "mdeg" for a unit`},
 		{"5 m%", Ratio, `has "m%" for a unit`},
@@ -48,48 +64,68 @@ func TestParseRejects(t *testing.T) {
 		{"1_000 V", Voltage, `has "_000 V" for a unit`},
 		{"1.2.3 V", Voltage, `has ".3 V" for a unit`},
 		{"0x10 V", Voltage, `has "x10 V" for a unit`},
-		{"1,5 V", Voltage, "has a comma where a decimal point would be right"},
-		{"10,000 V", Voltage, "has a comma"},
+		{"1,5 V", Voltage, comma},
+		{"10,000 V", Voltage, comma},
 
 		{"10 KΩ", Resistance, `has "KΩ" where "kΩ" would be right`},
 		{"10 KOHM", Resistance, `has "KOHM" where "kohm" would be right`},
 		{"10 k Ω", Resistance, `has "k Ω" where "kΩ" would be right`},
-		{"10 gΩ", Resistance, `where "GΩ" would be right`},
+		{"10 gΩ", Resistance, `has "gΩ" where "GΩ" would be right`},
 		{"10 MHZ", Frequency, `has "MHZ" where "MHz" would be right`}, // not mHz
 		{"10 mhz", Frequency, `has "mhz" where "mHz" would be right`}, // not MHz
-		{"10 khz", Frequency, `where "kHz" would be right`},
-		{"20 VPP", Voltage, `where "Vpp" would be right`},
-		{"20 V pp", Voltage, `where "Vpp" would be right`},
-		{"20 mV RMS", Voltage, `where "mVrms" would be right`},
-		{"20 v", Voltage, `where "V" would be right`},
-		{"20 PF", Capacitance, `where "pF" would be right`},
-		{"20 PPM", Ratio, `where "ppm" would be right`},
+		{"10 khz", Frequency, `has "khz" where "kHz" would be right`},
+		{"20 VPP", Voltage, `has "VPP" where "Vpp" would be right`},
+		{"20 V pp", Voltage, `has "V pp" where "Vpp" would be right`},
+		{"20 mV RMS", Voltage, `has "mV RMS" where "mVrms" would be right`},
+		{"20 v", Voltage, `has "v" where "V" would be right`},
+		{"20 PF", Capacitance, `has "PF" where "pF" would be right`},
+		{"20 PPM", Ratio, `has "PPM" where "ppm" would be right`},
 
-		{"1.2() V", Voltage, "has no uncertainty that can be read"},
-		{"1.2(a) V", Voltage, "has no uncertainty that can be read"},
-		{"1.2(-3) V", Voltage, "has no uncertainty that can be read"},
-		{"1.2(3.) V", Voltage, "has no uncertainty that can be read"},
-		{"1.2(1e3) V", Voltage, "has no uncertainty that can be read"},
-		{"1.2(3 V", Voltage, "has no uncertainty that can be read"},
-		{"1.2 (3) V", Voltage, "has no uncertainty that can be read"},
-		{"1.2e3(4) V", Voltage, "has no uncertainty that can be read"},
-		{"1.2(3)(4) V", Voltage, "has no uncertainty that can be read"},
-		{"1.2(3", Ratio, "has no uncertainty that can be read"},
+		{"1.2() V", Voltage, noUncertainty},
+		{"1.2(a) V", Voltage, noUncertainty},
+		{"1.2(-3) V", Voltage, noUncertainty},
+		{"1.2(3.) V", Voltage, noUncertainty},
+		{"1.2(1e3) V", Voltage, noUncertainty},
+		{"1.2(3 V", Voltage, noUncertainty},
+		{"1.2 (3) V", Voltage, noUncertainty},
+		{"1.2e3(4) V", Voltage, noUncertainty},
+		{"1.2(3)(4) V", Voltage, noUncertainty},
+		{"1.2(3", Ratio, noUncertainty},
 		{"1.2 ± 0.3 V", Voltage, `has "± 0.3 V" for a unit`},
-
-		{"1e999 V", Voltage, `"1e999 V" is too large`},
-		{"1e308 kV", Voltage, "is too large"},
-		{"1e99999999999999999999 V", Voltage, "is too large"},
-		{"1(9)e308 V", Voltage, "is too large"},
-		{"1e-999 V", Voltage, "is too small"}, // and not 0, the source off
-		{"1e-99999999999999999999 V", Voltage, "is too small"},
-		{"-1e-320 pV", Voltage, "is too small"},
 	} {
-		got, err := Parse(c.text, c.kind)
-		if err == nil {
-			t.Errorf("%q was taken for %+v", c.text, got)
-		} else if !strings.Contains(err.Error(), c.want) {
-			t.Errorf("%q: the message is\n%v\nwithout\n%s", c.text, err, c.want)
+		want := strconv.Quote(c.text) + " " + c.want + "; " + asked[c.kind]
+		if got, err := Parse(c.text, c.kind); err == nil || err.Error() != want {
+			t.Errorf("%q: %+v and the message\n%v\nwant\n%s", c.text, got, err, want)
+		}
+	}
+}
+
+// Nothing but spaces is nothing.
+func TestParseRejectsNothing(t *testing.T) {
+	const want = `nothing is written; a voltage is written like "70.7 µV"`
+	for _, text := range []string{"", "  ", " \u00a0\t\u202f\n"} {
+		if got, err := Parse(text, Voltage); err == nil || err.Error() != want {
+			t.Errorf("%q: %+v, %v, want %s", text, got, err, want)
+		}
+	}
+}
+
+// Beyond what a float64 holds: the largest is 1.8e308, the smallest 4.9e-324 (binary64 of IEEE 754).
+func TestParseRejectsWhatIsBeyondReach(t *testing.T) {
+	for text, want := range map[string]string{
+		"1e999 V":                   `"1e999 V" is too large`,
+		"-1e999 V":                  `"-1e999 V" is too large`,
+		"1e308 kV":                  `"1e308 kV" is too large`,
+		"1(9)e308 V":                `"1(9)e308 V" is too large`,
+		"1e99999999999999999999 V":  `"1e99999999999999999999 V" is too large`,
+		"1e-999 V":                  `"1e-999 V" is too small`, // and not 0, the source off
+		"0.1(1)e-999 V":             `"0.1(1)e-999 V" is too small`,
+		"0.0(1)e-999 V":             `"0.0(1)e-999 V" is too small`,
+		"-1e-320 pV":                `"-1e-320 pV" is too small`,
+		"1e-99999999999999999999 V": `"1e-99999999999999999999 V" is too small`,
+	} {
+		if got, err := Parse(text, Voltage); err == nil || err.Error() != want {
+			t.Errorf("%q: %+v, %v, want %s", text, got, err, want)
 		}
 	}
 }

@@ -2,6 +2,7 @@ package quantity
 
 import (
 	"math"
+	"strings"
 	"testing"
 
 	"pgregory.net/rapid"
@@ -62,6 +63,31 @@ func TestPrefixLeavesOneToThreeDigits(t *testing.T) {
 		scale, _ := Prefix(x, "V")
 		if y := x / scale; y < 1-1e-11 || y >= 1000 {
 			t.Fatalf("%v V: %v before the prefixed unit", x, y)
+		}
+	})
+}
+
+// Every float64 can be written, with its unit behind it, and a finite one neither as Inf nor as NaN; but 1.8e302 m² is
+// beyond a float64 in mm².
+func TestEveryNumberIsWritten(t *testing.T) {
+	extremes := []float64{0, math.SmallestNonzeroFloat64, math.MaxFloat64, -math.MaxFloat64, math.Inf(1), math.Inf(-1), math.NaN()}
+	number := rapid.OneOf(rapid.Float64(), rapid.SampledFrom(extremes))
+	rapid.Check(t, func(t *rapid.T) {
+		x, u := number.Draw(t, "x"), math.Abs(number.Draw(t, "u"))
+		unit := rapid.SampledFrom([]string{"V", "1", "°C", "m²", "1/K"}).Draw(t, "unit")
+		symbol := strings.TrimSuffix(unit, "1")
+		for _, text := range []string{Format(x, 4, unit), Plain(x, unit), Concise(x, u, unit), PlusMinus(x, u, unit)} {
+			if finite(u) && !strings.HasSuffix(text, symbol) {
+				t.Fatalf("%v, u %v is written %q, without %s", x, u, text, unit)
+			}
+			if finite(1e6*x) && finite(1e6*u) && strings.ContainsAny(text, "IN") {
+				t.Fatalf("%v, u %v is written %q", x, u, text)
+			}
+		}
+		Share(x, 2) // has no panic
+		SharePlusMinus(x, u)
+		if scale, _ := Prefix(x, unit); !(scale > 0) {
+			t.Fatalf("%v %s: the scale is %v", x, unit, scale)
 		}
 	})
 }

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"regexp"
+	"slices"
 	"strings"
 )
 
@@ -28,20 +29,22 @@ func ParseSpread(s string, k Kind) (Spread, error) {
 		k = temperatureDifference
 	}
 	parts := strings.Split(exponentPlus.ReplaceAllString(s, "$1"), "+")
-	if tidy(parts[0]) == "" || len(parts) > 2 {
+	if slices.ContainsFunc(parts, func(part string) bool { return tidy(part) == "" }) || len(parts) > 2 {
 		return Spread{}, fmt.Errorf("%q is no uncertainty; one is written like \"0.1 %%\", %q or both with a + between", s, k.Example())
 	}
 	var out Spread
 	relative, absolute := false, false
 	for _, part := range parts {
-		v, err := Parse(part, Ratio)
-		isShare := err == nil && (k == Ratio || strings.TrimRight(tidy(part), "0123456789.eE+-() ") != "")
-		if !isShare {
-			if v, err = Parse(part, k); err != nil {
-				return Spread{}, fmt.Errorf("%w, its uncertainty also like \"0.1 %%\"", err)
-			}
+		v, err := Parse(part, share)
+		isShare := err == nil || k == Ratio
+		if err != nil {
+			v, err = Parse(tidy(part), k)
 		}
 		switch {
+		case err != nil && k == Ratio:
+			return Spread{}, err
+		case err != nil:
+			return Spread{}, fmt.Errorf("%w, its uncertainty also like \"0.1 %%\"", err)
 		case v.HasU:
 			return Spread{}, fmt.Errorf("%q: an uncertainty has no uncertainty of its own", s)
 		case v.X < 0:

@@ -1,9 +1,6 @@
 package quantity
 
-import (
-	"strings"
-	"testing"
-)
+import "testing"
 
 func TestParseSpread(t *testing.T) {
 	for _, c := range []struct {
@@ -17,12 +14,14 @@ func TestParseSpread(t *testing.T) {
 		{"0.1 %", Resistance, Spread{0.001, 0}},
 		{"25 ppm", Resistance, Spread{25e-6, 0}},
 		{"80 Ω", Resistance, Spread{0, 80}},
+		{"0.1\u00a0% + 10\u202fmΩ", Resistance, Spread{0.001, 0.01}},
 		{"0 Ω", Resistance, Spread{}},
+		{"1e-3 Ω", Resistance, Spread{0, 0.001}},
 		{"1e+3 Ω", Resistance, Spread{0, 1000}},
 		{"1e-3 % + 1E+1 Ω", Resistance, Spread{1e-5, 10}},
 		{"0.02 % + 1 mV", Voltage, Spread{0.0002, 0.001}},
 		{"25 ppm", Ratio, Spread{25e-6, 0}},
-		{"0.01", Ratio, Spread{0.01, 0}},
+		{"0.001", Ratio, Spread{0.001, 0}},
 		{"0.5 °C", Temperature, Spread{0, 0.5}},
 		{"0.5 K", Temperature, Spread{0, 0.5}},
 		{"500 mK", Temperature, Spread{0, 0.5}},
@@ -37,31 +36,37 @@ func TestParseSpread(t *testing.T) {
 }
 
 func TestParseSpreadRejects(t *testing.T) {
+	const (
+		none  = `; one is written like "0.1 %", "10 kΩ" or both with a + between`
+		asked = `; a resistance is written like "10 kΩ", its uncertainty also like "0.1 %"`
+	)
 	for _, c := range []struct {
 		text string
 		kind Kind
-		want string // part of the message
+		want string
 	}{
-		{"", Resistance, `is no uncertainty; one is written like "0.1 %", "10 kΩ" or both`},
-		{"+ 0.1 %", Resistance, "is no uncertainty"},
-		{"0.1 % +", Resistance, "nothing is written"},
-		{"0.1 % + 1 Ω + 1 Ω", Resistance, "is no uncertainty"},
-		{"0.1", Resistance, `"0.1" has no unit`},
-		{"0.1 % + 3", Resistance, `has no unit`},
-		{"0.1 % + 3 V", Resistance, `has "V" for a unit`},
-		{"0.1 % + 5 ppm", Resistance, "two parts of one kind"},
-		{"1 Ω + 1 Ω", Resistance, "two parts of one kind"},
-		{"-0.1 %", Resistance, "is negative"},
-		{"0.1 % + -1 Ω", Resistance, "is negative"},
-		{"1.0(2) Ω", Resistance, "has no uncertainty of its own"},
-		{"1.0(2) %", Resistance, "has no uncertainty of its own"},
-		{"0.5 kg", Temperature, `a temperature is written like "0.5 °C"`},
+		{"", Resistance, `"" is no uncertainty` + none},
+		{"+5 %", Resistance, `"+5 %" is no uncertainty` + none},
+		{"0.1 % +", Resistance, `"0.1 % +" is no uncertainty` + none},
+		{"0.1 % + 1 Ω + 1 Ω", Resistance, `"0.1 % + 1 Ω + 1 Ω" is no uncertainty` + none},
+		{"0.001", Resistance, `"0.001" has no unit` + asked}, // 0.1 % or 1 mΩ?
+		{"0.1 % + 3", Resistance, `"3" has no unit` + asked},
+		{"0.1 % + 3 V", Resistance, `"3 V" has "V" for a unit` + asked},
+		{"3 V + 0.1 %", Resistance, `"3 V" has "V" for a unit` + asked},
+		{"10 KΩ", Resistance, `"10 KΩ" has "KΩ" where "kΩ" would be right` + asked},
+		{"±5 %", Resistance, `"±5 %" does not begin with a number` + asked},
+		{"0.1 % + 5 ppm", Resistance, `"0.1 % + 5 ppm" has two parts of one kind; a share and a fixed part add`},
+		{"1 Ω + 1 Ω", Resistance, `"1 Ω + 1 Ω" has two parts of one kind; a share and a fixed part add`},
+		{"-0.1 %", Resistance, `"-0.1 %" is negative; an uncertainty is not`},
+		{"0.1 % + -1 Ω", Resistance, `"0.1 % + -1 Ω" is negative; an uncertainty is not`},
+		{"1.0(2) Ω", Resistance, `"1.0(2) Ω": an uncertainty has no uncertainty of its own`},
+		{"1.0(2) %", Resistance, `"1.0(2) %": an uncertainty has no uncertainty of its own`},
+		{"0.001 + 5 ppm", Ratio, `"0.001 + 5 ppm" has two parts of one kind; a share and a fixed part add`},
+		{"3 V", Ratio, `"3 V" has "V" for a unit; a share is written like "0.1 %"`},
+		{"0.5 kg", Temperature, `"0.5 kg" has "kg" for a unit; a temperature is written like "0.5 °C", its uncertainty also like "0.1 %"`},
 	} {
-		got, err := ParseSpread(c.text, c.kind)
-		if err == nil {
-			t.Errorf("%q was taken for %+v", c.text, got)
-		} else if !strings.Contains(err.Error(), c.want) {
-			t.Errorf("%q: the message is\n%v\nwithout\n%s", c.text, err, c.want)
+		if got, err := ParseSpread(c.text, c.kind); err == nil || err.Error() != c.want {
+			t.Errorf("%q: %+v and the message\n%v\nwant\n%s", c.text, got, err, c.want)
 		}
 	}
 }

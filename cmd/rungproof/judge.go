@@ -45,7 +45,7 @@ or the usage.`,
 			return err
 		},
 	}
-	c.Flags().StringVar(&out, "out", "", "write result.json, report.html, report.txt and the figures to `DIR`")
+	c.Flags().StringVar(&out, "out", "", "write result.json, report.html and .txt, and figures to `DIR`")
 	c.Flags().BoolVar(&asJSON, "json", false, "write the content of result.json instead of the summary")
 	return c
 }

@@ -10,6 +10,8 @@ import (
 	"strings"
 
 	"github.com/spf13/cobra"
+
+	"rungproof/calib/fault"
 )
 
 // version is the program's; every result carries it.
@@ -62,18 +64,22 @@ fault its own (gain, offset, one range) or the bench's (a stray resistance in
 the wiring)?
 
   rungproof draft plan.toml              write a plan to start from
-  rungproof expect plan.toml             what will be read, and what can be resolved
+  rungproof expect plan.toml             what will be read, what can be resolved
   rungproof sheet plan.toml > bench.csv  a bench sheet to fill in
   rungproof judge plan.toml bench.csv    the verdict
 
 Exit status: 0 pass, 1 fail, 3 conditional or not judged, 2 a fault in the input
 or the usage.`
 
-// message is an error as the user sees it: the error line, then hint lines.
+// message is an error as the user sees it: error lines, each with its hint lines behind it.
 func message(err error) string {
 	var h hinted
 	if errors.As(err, &h) {
 		return "rungproof: " + h.text + "\n  hint: " + h.hint
+	}
+	var faults fault.List
+	if errors.As(err, &faults) {
+		return faults.Error() // every line begins with file and line, as compilers write them
 	}
 	text := strings.TrimSpace(err.Error())
 	if strings.HasPrefix(text, "unknown ") {
