@@ -46,7 +46,7 @@ func Evaluate(p *plan.Plan, set *reading.Set) (*Evaluation, error) {
 	}
 	e.judge()
 	r := e.Result
-	r.Repeatability = m.repeatability()
+	r.Repeatability = m.repeats
 	r.Inputs = e.inputs()
 	r.PlanSHA256, r.ReadingsSHA256 = digest(p.Source), digest(set.Source)
 	return e, nil

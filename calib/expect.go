@@ -49,6 +49,7 @@ func perfect(p *plan.Plan) *model {
 		d := &m.forward.drops[m.forward.of[i]]
 		o := observation{step: i, n: s.Repeats, rng: s.Range}
 		m.predictScatter(&o)
+		o.settle()
 		m.byStep[i] = len(m.obs)
 		m.obs = append(m.obs, o)
 		switch x := m.expect(i); p.Detector.Reads {
@@ -112,11 +113,12 @@ func (m *model) expectSteps(x *Expectation, e *estimate) {
 	for i := range m.obs {
 		s, o := &m.plan.Steps[i], &m.obs[i]
 		exp := m.expect(i)
+		one, _ := o.scatter.one()
 		full := m.plan.Detector.Ranges[s.Range]
 		limit, _ := m.outcome(o, &errors[i], x.CoverageFactor)
 		U := x.CoverageFactor * errors[i].u
 		step := ExpectedStep{ID: s.ID, Index: i, Drop: exp.drop, PhaseDeg: exp.phase * 180 / math.Pi, Range: full,
-			Expected: exp.value, UExpected: exp.u, Share: math.Abs(exp.value) / full, SigmaOne: o.one,
+			Expected: exp.value, UExpected: exp.u, Share: math.Abs(exp.value) / full, SigmaOne: one,
 			Wait: wait(s, m.plan.Detector.Poles, exp.value-before, limit), Limit: number(limit), U: U, Ratio: number(limit / U)}
 		before = exp.value
 		x.BenchTime += step.Wait + float64(s.Repeats-1)*wait(s, m.plan.Detector.Poles, 0, limit)

@@ -5,29 +5,28 @@ import (
 	"math"
 	"math/cmplx"
 
-	"rungproof/calib/detector"
 	"rungproof/calib/plan"
 	"rungproof/calib/reading"
-	"rungproof/circuit"
 )
 
 // observation is the mean of a step's readings.
 type observation struct {
-	step      int
-	n         int        // readings in the mean
-	mean      complex128 // V rms; y is the imaginary part
-	rng       int        // range that they were taken on
-	output    bool       // taken at the analogue output
-	left      bool       // left out of the fit: every reading of the step was flagged
-	flags     []string
-	beyond    bool    // a reading beyond full scale and overrange
-	one       float64 // standard deviation of one reading, V, along the expected phasor
-	acrossOne float64 // and across it
-	along     float64 // of the mean, along the expected phasor
-	across    float64 // of the mean, across it
-	noise     float64 // filtered noise on one axis of one reading, V
-	squares   float64 // sum of squared deviations from the mean, along and across, in units of the predicted variance
-	freedoms  int     // their degrees of freedom
+	step     int
+	n        int        // readings in the mean
+	mean     complex128 // V rms; y is the imaginary part
+	rng      int        // range that they were taken on
+	output   bool       // taken at the analogue output
+	left     bool       // left out of the fit: every reading of the step was flagged
+	flags    []string
+	beyond   bool // a reading beyond full scale and overrange
+	scatter  scatter
+	dof      float64 // degrees of freedom of the scatter where the repeats say what it is; else 0, infinite
+	along    float64 // standard deviation of the mean, along the expected phasor
+	across   float64 // and across it
+	noise    float64 // filtered noise on one axis of one reading, V, as the plan states it
+	along2   float64 // sum of squared deviations from the mean along it, V²
+	across2  float64 // and across it
+	freedoms int     // degrees of freedom of both sums
 }
 
 // model is the measurement: what the plan states and what was read.
@@ -37,6 +36,7 @@ type model struct {
 	obs     []observation
 	axes    int   // rows an observation: 2 for two-phase readings
 	byStep  []int // by step, the index of its observation, or -1
+	repeats Repeatability
 }
 
 // newModel joins a plan and its readings.
@@ -59,6 +59,10 @@ func newModel(p *plan.Plan, set *reading.Set) (*model, error) {
 	}
 	if len(m.obs) == 0 {
 		return nil, fmt.Errorf("%s: no step has a reading", set.File)
+	}
+	m.settleScatter()
+	for i := range m.obs {
+		m.obs[i].settle()
 	}
 	return m, nil
 }
@@ -112,43 +116,13 @@ func (m *model) observe(step int, indices []int, set *reading.Set) (observation,
 		z := complex(set.Readings[i].X, set.Readings[i].Y) - o.mean
 		if m.axes == 2 {
 			z /= along
-			o.squares += imag(z) * imag(z) / (o.acrossOne * o.acrossOne)
+			o.across2 += imag(z) * imag(z)
 		}
-		o.squares += real(z) * real(z) / (o.one * o.one)
+		o.along2 += real(z) * real(z)
 	}
 	o.freedoms = (o.n - 1) * m.axes
 	return o, nil
 }
 
-// predictScatter sets the standard deviations of an observation:
-//
-//	s² = (e_n² + (i_n·|Z|)² + 4kT·Re Z)·B_n + (resolution·range)²/12 + (stability·V)²
-//
-// for one reading, Z the output impedance with the input connected and B_n the
-// noise bandwidth. The mean of n readings has all but the resolution divided by
-// n (GUM F.2.2.1). The gain's scatter (stability) acts along the phasor only.
-func (m *model) predictScatter(o *observation) {
-	p, s := m.plan, &m.plan.Steps[o.step]
-	d := &m.forward.drops[m.forward.of[o.step]]
-	o.noise = m.forward.noise(d.state) * math.Sqrt(detector.NoiseBandwidth(s.TimeConstant, p.Detector.Poles))
-	display := p.Detector.Resolution * p.Detector.Ranges[o.rng]
-	round := display * display / 12
-	gain := p.Detector.Stability * d.stated
-	n := float64(o.n)
-	// A plan may state neither noise nor resolution: a billionth of full scale
-	// keeps the weights finite, and the misfit shows the truth.
-	least := 1e-9 * p.Detector.Ranges[o.rng]
-	spread := func(averaged, fixed float64) float64 { return math.Max(math.Sqrt(averaged+fixed), least) }
-	white := o.noise * o.noise
-	o.one, o.acrossOne = spread(white+gain*gain, round), spread(white, round)
-	o.along, o.across = spread((white+gain*gain)/n, round), spread(white/n, round)
-}
-
-// noise is the density at the detector's input in one state, V/√Hz: its own, that
-// of its current in the ladder's output impedance, and the ladder's thermal noise.
-func (f *forward) noise(state int) float64 {
-	det := &f.plan.Detector
-	z := f.states[state].z
-	current := det.CurrentNoise * math.Hypot(real(z), imag(z))
-	return math.Hypot(math.Hypot(det.Noise, current), circuit.ThermalNoise(z, f.plan.Temperature.X))
-}
+// settle sets the standard deviations of the mean.
+func (o *observation) settle() { o.along, o.across = o.scatter.mean(o.n) }

@@ -183,9 +183,10 @@ type Finding struct {
 // Repeatability compares the scatter of repeated readings with the predicted
 // one: χ² of the pooled variance, one-sided.
 type Repeatability struct {
-	Ratio number `json:"ratio"` // observed over predicted standard deviation; null without repeats
-	DOF   int    `json:"dof"`
-	P     number `json:"p"` // probability of at least this scatter by chance
+	Ratio number  `json:"ratio"` // observed over predicted standard deviation; null without repeats
+	DOF   int     `json:"dof"`
+	P     number  `json:"p"` // probability of at least this scatter by chance
+	Basis Scatter `json:"readings_uncertainty"`
 }
 
 // Interval of a quantity.

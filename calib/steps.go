@@ -4,8 +4,6 @@ import (
 	"math"
 	"math/cmplx"
 	"sort"
-
-	"gonum.org/v1/gonum/stat/distuv"
 )
 
 // expectation is what a detector without fault reads at a step, the wiring as stated.
@@ -54,11 +52,12 @@ func (e *Evaluation) step(k int, found *stepError, left deviation) StepResult {
 	m := e.model
 	o := &m.obs[k]
 	x := m.expect(k)
+	one, _ := o.scatter.one()
 	limit, outcome := m.outcome(o, found, e.Result.CoverageFactor)
 	s := StepResult{
 		Index: o.step, ID: e.Plan.Steps[o.step].ID,
 		Drop: x.drop, PhaseDeg: x.phase * 180 / math.Pi, Range: e.Plan.Detector.Ranges[o.rng],
-		SigmaOne: o.one, Expected: x.value, UExpected: x.u,
+		SigmaOne: one, Expected: x.value, UExpected: x.u,
 		Reading: number(found.reading), UReading: number(o.along),
 		Error: number(found.e), U: number(e.Result.CoverageFactor * found.u), Limit: number(limit),
 		PhaseError: number(math.NaN()), UPhase: number(math.NaN()), PhaseLimit: number(math.NaN()),
@@ -161,20 +160,6 @@ func sign(x float64) float64 {
 		return -1
 	}
 	return 1
-}
-
-// repeatability pools the scatter of the repeated readings and tests it, one-sided.
-func (m *model) repeatability() Repeatability {
-	sum, dof := 0.0, 0
-	for i := range m.obs {
-		sum += m.obs[i].squares
-		dof += m.obs[i].freedoms
-	}
-	if dof == 0 {
-		return Repeatability{Ratio: number(math.NaN()), P: number(math.NaN())}
-	}
-	return Repeatability{Ratio: number(math.Sqrt(sum / float64(dof))), DOF: dof,
-		P: number(distuv.ChiSquared{K: float64(dof)}.Survival(sum))}
 }
 
 // inputs are the uncertain inputs, as stated and as the fit has them.

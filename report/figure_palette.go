@@ -12,15 +12,15 @@ import (
 func figurePalette(m *image.RGBA) *image.Paletted {
 	out := image.NewPaletted(m.Bounds(), nil)
 	for mask := uint32(0xffffff); ; mask = mask << 1 & 0xfefefe & mask {
-		if out.Palette = paint(m, out.Pix, mask); out.Palette != nil {
+		if out.Palette = figureIndices(m, out.Pix, mask); out.Palette != nil {
 			return out
 		}
 	}
 }
 
-// paint fills pix with indices of the colours under a mask, in the order in which
+// figureIndices fills pix with indices of the colours under a mask, in the order in which
 // they come, and gives the colours; nil where they are more than 256.
-func paint(m *image.RGBA, pix []uint8, mask uint32) color.Palette {
+func figureIndices(m *image.RGBA, pix []uint8, mask uint32) color.Palette {
 	var palette color.Palette
 	index := map[uint32]uint8{}
 	last, lastIndex := uint32(0xff000000), uint8(0)

@@ -49,7 +49,7 @@ func figureCase(t testing.TB, name string) *calib.Evaluation {
 
 var figureCases = []string{"arrival", "one-amplitude", "quadrature", "string"}
 
-func mustFigures(t testing.TB, e *calib.Evaluation) []Figure {
+func figuresOf(t testing.TB, e *calib.Evaluation) []Figure {
 	t.Helper()
 	figures, err := Figures(e)
 	if err != nil {
@@ -69,7 +69,7 @@ func figurePixels(t testing.TB, b []byte) image.Image {
 
 // The golden pictures were looked at by a person; every pixel must stay.
 func TestFiguresOfArrivalAreAsLookedAt(t *testing.T) {
-	for _, f := range mustFigures(t, figureCase(t, "arrival")) {
+	for _, f := range figuresOf(t, figureCase(t, "arrival")) {
 		file := filepath.Join("testdata", "figures", "arrival-"+f.Name)
 		if *figuresUpdate {
 			if err := os.MkdirAll(filepath.Dir(file), 0o777); err != nil {
@@ -104,7 +104,7 @@ func TestFiguresOfArrivalAreAsLookedAt(t *testing.T) {
 
 func TestFiguresAreTheSameBytesEachTime(t *testing.T) {
 	for _, name := range figureCases {
-		first, second := mustFigures(t, figureCase(t, name)), mustFigures(t, figureCase(t, name))
+		first, second := figuresOf(t, figureCase(t, name)), figuresOf(t, figureCase(t, name))
 		if len(first) != len(second) {
 			t.Fatalf("%s: %d figures, then %d", name, len(first), len(second))
 		}
@@ -123,7 +123,7 @@ func TestFiguresOfEachCase(t *testing.T) {
 		"quadrature":    {"readings.png", "errors.png", "unexplained.png", "joint.png", "frequency.png"},
 		"string":        {"readings.png", "errors.png", "unexplained.png", "joint.png"},
 	} {
-		figures := mustFigures(t, figureCase(t, name))
+		figures := figuresOf(t, figureCase(t, name))
 		if len(figures) != len(want) {
 			t.Errorf("%s has %d figures, want %v", name, len(figures), want)
 			continue
@@ -142,6 +142,6 @@ func TestFiguresOfEachCase(t *testing.T) {
 func BenchmarkFigures(b *testing.B) {
 	e := figureCase(b, "arrival")
 	for b.Loop() {
-		mustFigures(b, e)
+		figuresOf(b, e)
 	}
 }

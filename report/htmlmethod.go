@@ -63,7 +63,8 @@ func rule(p *plan.Plan) string {
 
 // beyond is the probability that the true error is outside of a limit that the
 // measured one keeps clear of by g·U, normally distributed, one-sided
-// (JCGM 106:2012, 8.3.2): U is √2·erf⁻¹(coverage) standard uncertainties.
+// (ILAC-G8:09/2019, its table of guard bands): U is √2·erf⁻¹(coverage) standard
+// uncertainties.
 func beyond(g, coverage float64) float64 { return math.Erfc(g*math.Erfinv(coverage)) / 2 }
 
 // references are the publications that the result rests on.

@@ -93,3 +93,33 @@ func TestRiceProperties(t *testing.T) {
 		}
 	})
 }
+
+// The power series gives way to the asymptotic one at x = s²/4σ² = 30, and that to |s| at 1e12.
+func TestRiceIsContinuous(t *testing.T) {
+	for _, s := range []float64{math.Sqrt(120), 2e6} {
+		below, slopeBelow := RiceMean(s*(1-1e-15), 1)
+		above, slopeAbove := RiceMean(s*(1+1e-15), 1)
+		within(t, fmt.Sprintf("mean at %g deviations", s), above, below, 5e-15*s+1e-12)
+		within(t, fmt.Sprintf("slope at %g deviations", s), slopeAbove, slopeBelow, 1e-12)
+	}
+}
+
+// Whatever the ratio of signal and noise, nothing overflows or is 0/0 on the way.
+func TestRiceIsFinite(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		sigma := math.Pow(10, rapid.Float64Range(-300, 300).Draw(t, "log σ"))
+		s := math.Pow(10, rapid.Float64Range(-300, 300).Draw(t, "log s"))
+		if rapid.Bool().Draw(t, "no signal") {
+			s = 0
+		}
+		mean, slope := RiceMean(s, sigma)
+		lowest, highest := math.Max(s, sigma*math.Sqrt(math.Pi/2)), math.Hypot(s, sigma*math.Sqrt2)
+		if !(mean >= lowest*(1-1e-14) && mean <= highest*(1+1e-14) && slope >= 0 && slope <= 1) {
+			t.Fatalf("s %g, σ %g: mean %g, slope %g", s, sigma, mean, slope)
+		}
+		sigma = math.Sqrt(sigma) // a float64 holds its variance
+		if share := RiceVariance(s, sigma) / (sigma * sigma); !(share > 2-math.Pi/2-1e-14 && share <= 1+1e-14) {
+			t.Fatalf("s %g, σ %g: variance %g σ²", s, sigma, share)
+		}
+	})
+}

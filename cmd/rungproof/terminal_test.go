@@ -73,7 +73,7 @@ amplitude = { tolerance = "0.1 %", standard = "LONGmeter" }
 serial = "LONG"
 reads = "in-phase"
 ranges = [RANGES]
-resolution = "0.001 %"
+resolution = "0.01 %"
 input = { resistance = "1 MΩ", noise = "5 nV/√Hz", max = "1 mV" }
 filter = { time_constant = "30 ms", poles = 1 }
 limits = { reading = "0.01 %", range = "0.01 %", gain = "0.01 %" }
@@ -93,7 +93,7 @@ tolerance = "0.01 %"
 max_power = "1 nW"
 [[steps]]
 name = "Schritt-mit-sehr-langem-Namen-"
-amplitude = ["60 V", "3 V"]
+amplitude = ["60 V", "0.1 V"]
 set = { "LONGbox" = [BOX] }
 phase = ["0 deg", "180 deg"]
 repeats = 2
@@ -120,7 +120,7 @@ repeats = 2
 			flag = "overload"
 		}
 		if i%11 == 0 {
-			x *= 3
+			x *= 1.6
 		}
 		rows[i] = fmt.Sprintf("%s,%g,%s", cells[0], x, flag)
 	}
