@@ -15,26 +15,17 @@ import (
 type stepError struct {
 	reading  float64 // the part along the expected phasor
 	e, u     float64 // V
+	k        float64 // coverage factor, from the error's budget
 	expected float64 // reading expected there, V, signed
 	phase    float64 // rad, what the reading is turned against the expected phasor
 	uPhase   float64
+	kPhase   float64
 }
 
 // errorsOf finds the errors of all observations with the series resistance and the phases of a fit.
 func (m *model) errorsOf(e *estimate) []stepError {
-	// A detector without fault, all inputs at their stated values; what the fit
-	// found of the bench (series resistance) and of the reference (phases) stays.
-	p := append([]float64(nil), e.result.P...)
-	w := *e.layout
-	w.gain = make([]int, len(m.obs))
-	for i := range w.gain {
-		w.gain[i] = -1
-	}
-	w.offset, w.offsetY = -1, -1
-	copy(p[w.inputs:], m.forward.stated())
 	bias := m.noiseBias(e)
-	v := w.at(p, m.forward.stated())
-	v.noiseless = true
+	v := m.faultless(e)
 	propagate := newPropagation(m, e)
 	m.forward.compute(v.nu, v.r)
 	out := make([]stepError, len(m.obs))
@@ -47,13 +38,31 @@ func (m *model) errorsOf(e *estimate) []stepError {
 		s.reading = real(z)
 		s.expected = real(r.value)
 		s.e = s.reading - bias[i] - s.expected
-		s.u = propagate.u(i, &r, 0)
+		s.u, s.k = propagate.u(i, &r, 0)
 		if size := cmplx.Abs(r.value); m.axes == 2 && size > 0 {
 			s.phase = cmplx.Phase(z)
-			s.uPhase = propagate.u(i, &r, 1) / math.Max(cmplx.Abs(z), size)
+			s.uPhase, s.kPhase = propagate.u(i, &r, 1)
+			s.uPhase /= math.Max(cmplx.Abs(z), size)
 		}
 	}
 	return out
+}
+
+// faultless is a detector without fault with all inputs at their stated values;
+// what the fit found of the bench (series resistance) and of the reference
+// (phases) stays.
+func (m *model) faultless(e *estimate) parameters {
+	p := append([]float64(nil), e.result.P...)
+	w := *e.layout
+	w.gain = make([]int, len(m.obs))
+	for i := range w.gain {
+		w.gain[i] = -1
+	}
+	w.offset, w.offsetY = -1, -1
+	copy(p[w.inputs:], m.forward.stated())
+	v := w.at(p, m.forward.stated())
+	v.noiseless = true
+	return v
 }
 
 // noiseBias is what noise adds to each mean reading of a magnitude at the signal
@@ -73,21 +82,46 @@ func (m *model) noiseBias(e *estimate) []float64 {
 	return bias
 }
 
-// outcome judges one error by the plan's rule: limit and outcome. NaN and not
-// judged where no limit fits.
-func (m *model) outcome(o *observation, s *stepError, k float64) (limit float64, result decision.Outcome) {
+// rule is the plan's rule of decision.
+func (m *model) rule() decision.Rule {
+	switch d := &m.plan.Decision; d.Rule {
+	case "simple":
+		return decision.Simple{}
+	case "risk":
+		return decision.Risk{MaxFalseAccept: d.MaxFalseAccept}
+	default:
+		return decision.Guarded{Factor: d.Guard}
+	}
+}
+
+// judgement is an error against its limit.
+type judgement struct {
+	limit      float64 // NaN where the plan limits nothing there, and so are the others
+	acceptance float64 // the largest error that passes; NaN where none can
+	conformity float64 // probability that the true error is within the limit
+	capability float64 // limit over U
+	outcome    decision.Outcome
+}
+
+// judge decides on one error by the plan's rule. The error of a two-phase
+// reading's phase is judged beside it; the worse outcome holds.
+func (m *model) judge(o *observation, s *stepError) judgement {
 	full := m.plan.Detector.Ranges[o.rng]
 	l := m.plan.LimitAt(full, m.plan.Steps[o.step].Frequency)
 	if l == nil {
-		return math.NaN(), decision.NotJudged
+		nan := math.NaN()
+		return judgement{nan, nan, nan, nan, decision.NotJudged}
 	}
-	limit = l.Reading*math.Abs(s.expected) + l.Range*full
-	result = decision.Judge(s.e, limit, m.guard(k*s.u))
+	rule, limit, U := m.rule(), l.Reading*math.Abs(s.expected)+l.Range*full, s.k*s.u
+	j := judgement{
+		limit:      limit,
+		acceptance: decision.AcceptanceLimit(rule, limit, s.u, U),
+		conformity: decision.Within(s.e, s.u, limit),
+		capability: decision.Capability(limit, U),
+		outcome:    rule.Judge(s.e, limit, s.u, U),
+	}
 	if !math.IsNaN(l.Phase) && s.uPhase > 0 {
-		result = decision.Worst(result, decision.Judge(s.phase, l.Phase, m.guard(k*s.uPhase)))
+		j.outcome = decision.Worst(j.outcome, rule.Judge(s.phase, l.Phase, s.uPhase, s.kPhase*s.uPhase))
 	}
-	return limit, result
+	return j
 }
-
-// guard is the width of the guard band for an expanded uncertainty.
-func (m *model) guard(U float64) float64 { return m.plan.Decision.Guard * U }

@@ -9,6 +9,7 @@ import (
 
 	"rungproof/calib/fit"
 	"rungproof/calib/plan"
+	"rungproof/calib/uncertainty"
 )
 
 // What one gain stands for.
@@ -38,6 +39,8 @@ type estimate struct {
 	prior  int   // index of the prior of the series resistance among the priors, or -1
 	keys   []int // what each gain stands for: an index of range or of frequency; nil for the common one
 	v      parameters
+	gain   string // what one gain stands for
+	held   held
 }
 
 // arrange lays the parameters out: gains, offset, series resistance, phases, inputs.
@@ -101,7 +104,7 @@ func (m *model) frequenciesRead() []bool {
 // estimate fits the model, with one gain for all, one a range or one a frequency.
 func (m *model) estimate(gain string, h held) (*estimate, error) {
 	w, keys := m.arrange(gain, h)
-	e := &estimate{layout: w, keys: keys, prior: -1}
+	e := &estimate{layout: w, keys: keys, prior: -1, gain: gain, held: h}
 	start, turns := m.start(w)
 	problem := fit.Problem{Start: start}
 	for i := range m.obs {
@@ -213,13 +216,20 @@ func commonGain(common, several *estimate) float64 {
 	return distuv.ChiSquared{K: float64(extra)}.Survival(fall)
 }
 
-// value is a parameter with its standard uncertainty and the part of it that the readings bring.
-func (e *estimate) value(k int, unit string) Estimate {
+// value is a parameter with its standard uncertainty, the part of it that the
+// readings bring, and the coverage factor of its budget.
+func (m *model) value(e *estimate, k int, unit string) Estimate {
 	if k < 0 || !e.result.Determined(k) {
 		return Estimate{Unit: unit}
 	}
-	v, u, ur := e.result.P[k], math.Sqrt(e.result.Cov.At(k, k)), math.Sqrt(math.Max(0, e.result.CovObserved.At(k, k)))
-	return Estimate{Value: v, U: u, URandom: ur, Unit: unit, Known: true}
+	u, ur := math.Sqrt(e.result.Cov.At(k, k)), math.Sqrt(math.Max(0, e.result.CovObserved.At(k, k)))
+	lines := m.lines(e, e.result.Influence(k), e.result.PriorInfluence(k), unit)
+	return Estimate{Value: e.result.P[k], U: u, URandom: ur, Unit: unit, Known: true, K: m.factor(lines)}
+}
+
+// factor is the coverage factor of a budget's lines.
+func (m *model) factor(lines []uncertainty.Line) float64 {
+	return uncertainty.New(lines, m.plan.Decision.Coverage).K
 }
 
 // correlation of two parameters; NaN where either is not determined.

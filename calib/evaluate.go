@@ -46,10 +46,24 @@ func Evaluate(p *plan.Plan, set *reading.Set) (*Evaluation, error) {
 	}
 	e.judge()
 	r := e.Result
+	if r.Limiting, err = e.limited(); err != nil {
+		return nil, err
+	}
 	r.Repeatability = m.repeats
 	r.Inputs = e.inputs()
 	r.PlanSHA256, r.ReadingsSHA256 = digest(p.Source), digest(set.Source)
 	return e, nil
+}
+
+// limited looks for the steps at which the bench limits the decision.
+func (e *Evaluation) limited() (*Limiting, error) {
+	var ids []string
+	var limit, capability []float64
+	for _, s := range e.Result.Steps {
+		ids = append(ids, s.ID)
+		limit, capability = append(limit, float64(s.Limit)), append(capability, float64(s.Capability))
+	}
+	return e.limiting(ids, limit, capability)
 }
 
 func digest(b []byte) string {
@@ -115,14 +129,14 @@ func (e *Evaluation) fitResult(free *estimate, hold held) error {
 	w := a.layout
 	f.Gain = Estimate{Unit: "1"}
 	if e.Plan.Fit.Gain == gainCommon && w.gains == 1 {
-		f.Gain = a.value(0, "1")
+		f.Gain = m.value(a, 0, "1")
 	}
 	f.Offset, f.SeriesResistance = Estimate{Unit: unit}, Estimate{Unit: "ohm"}
 	f.Correlation = map[string]number{}
 	if f.Separable {
-		f.Offset, f.SeriesResistance = a.value(w.offset, unit), a.value(w.series, "ohm")
+		f.Offset, f.SeriesResistance = m.value(a, w.offset, unit), m.value(a, w.series, "ohm")
 		if m.axes == 2 {
-			y := a.value(w.offsetY, unit)
+			y := m.value(a, w.offsetY, unit)
 			f.OffsetQuadrature = &y
 		}
 		f.Correlation["offset,series_resistance"] = number(a.correlation(w.offset, w.series))
@@ -135,12 +149,12 @@ func (e *Evaluation) fitResult(free *estimate, hold held) error {
 		if err != nil {
 			return err
 		}
-		intercept, series := a.value(w.offset, unit), alternate.value(alternate.layout.series, "ohm")
+		intercept, series := m.value(a, w.offset, unit), m.value(alternate, alternate.layout.series, "ohm")
 		f.Intercept, f.AsSeries = &intercept, &series
 	}
 	for i, k := range w.phase {
 		if k >= 0 {
-			f.Phase = append(f.Phase, ByFrequency{e.Plan.Frequencies[i], a.value(k, "rad")})
+			f.Phase = append(f.Phase, ByFrequency{e.Plan.Frequencies[i], m.value(a, k, "rad")})
 		}
 	}
 	f.ChiSquared, f.DOF, f.P = number(a.result.ChiSquared), a.result.DOF, number(math.NaN())
@@ -154,10 +168,10 @@ func (e *Evaluation) fitResult(free *estimate, hold held) error {
 func (m *model) gains(common, several *estimate, key func(int) KeyGain) *Gains {
 	w, unit := several.layout, offsetUnit(m.plan)
 	g := &Gains{PCommon: number(commonGain(common, several)),
-		Offset: several.value(w.offset, unit), SeriesResistance: several.value(w.series, "ohm")}
+		Offset: m.value(several, w.offset, unit), SeriesResistance: m.value(several, w.series, "ohm")}
 	for k, of := range several.keys {
 		kg := key(of)
-		kg.Limit, kg.Estimate = math.NaN(), several.value(k, "1")
+		kg.Limit, kg.Estimate = math.NaN(), m.value(several, k, "1")
 		g.Gain = append(g.Gain, kg)
 	}
 	sortGains(g.Gain)
@@ -176,7 +190,7 @@ func (e *Evaluation) judge() {
 	var other []stepError
 	if e.alternate != nil {
 		other = m.errorsOf(e.alternate)
-		r.Condition = m.condition(e.deciding, found, r.CoverageFactor)
+		r.Condition = m.condition(e.deciding, found)
 	}
 	unexplained := m.unexplained(e.deciding)
 	m.forward.compute(m.forward.stated(), 0)
@@ -188,12 +202,12 @@ func (e *Evaluation) judge() {
 		}
 		s := e.step(k, &found[k], unexplained[k])
 		if other != nil {
-			_, alternative := m.outcome(&m.obs[k], &other[k], r.CoverageFactor)
-			s.Outcome = inDoubt(s.Outcome, alternative)
+			s.Outcome = inDoubt(s.Outcome, m.judge(&m.obs[k], &other[k]).outcome)
 		}
 		if s.Beyond || len(s.Flags) > 0 {
 			s.Outcome = decision.AtBest(s.Outcome, decision.ConditionalPass)
 		}
+		s.settleRisk()
 		r.Verdict = decision.Worst(r.Verdict, s.Outcome)
 		r.Steps = append(r.Steps, s)
 	}
@@ -230,6 +244,6 @@ func (e *Evaluation) judgeGain(g *KeyGain) {
 		}
 	}
 	if g.Known && !math.IsNaN(g.Limit) {
-		g.Outcome = decision.Judge(g.Value-1, g.Limit, e.model.guard(e.Result.CoverageFactor*g.U))
+		g.Outcome = e.model.rule().Judge(g.Value-1, g.Limit, g.U, g.Expanded())
 	}
 }

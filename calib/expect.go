@@ -6,6 +6,7 @@ import (
 
 	"gonum.org/v1/gonum/stat/distuv"
 
+	"rungproof/calib/decision"
 	"rungproof/calib/detector"
 	"rungproof/calib/plan"
 )
@@ -22,24 +23,26 @@ type Expectation struct {
 	Parting          *Parting          `json:"parting,omitempty"` // not separable: the cheapest step that parts the two
 	BenchTime        float64           `json:"bench_time"`        // s, without the time to change settings
 	CoverageFactor   float64           `json:"coverage_factor"`
+	Limiting         *Limiting         `json:"limited_by_the_bench,omitempty"`
 	Findings         []Finding         `json:"findings"`
 }
 
 // ExpectedStep is what a detector without fault reads at a step, and how well it can be judged there.
 type ExpectedStep struct {
-	ID        string  `json:"id"`
-	Index     int     `json:"-"`
-	Drop      float64 `json:"drop"` // V rms
-	PhaseDeg  float64 `json:"phase_deg"`
-	Range     float64 `json:"range"` // full scale, V rms
-	Expected  float64 `json:"expected"`
-	UExpected float64 `json:"u_expected"`
-	Share     float64 `json:"share_of_range"`
-	SigmaOne  float64 `json:"sigma_one_reading"`
-	Wait      float64 `json:"wait"`  // s, before the first reading
-	Limit     number  `json:"limit"` // V; null where the plan judges nothing
-	U         float64 `json:"U"`     // predicted, of the step's error
-	Ratio     number  `json:"limit_over_U"`
+	ID        string      `json:"id"`
+	Index     int         `json:"-"`
+	Drop      float64     `json:"drop"` // V rms
+	PhaseDeg  float64     `json:"phase_deg"`
+	Range     float64     `json:"range"` // full scale, V rms
+	Expected  float64     `json:"expected"`
+	UExpected float64     `json:"u_expected"`
+	Share     float64     `json:"share_of_range"`
+	SigmaOne  float64     `json:"sigma_one_reading"`
+	Wait      float64     `json:"wait"`  // s, before the first reading
+	Limit     number      `json:"limit"` // V; null where the plan judges nothing
+	U         float64     `json:"U"`     // predicted, of the step's error
+	Ratio     number      `json:"limit_over_U"`
+	Global    *GlobalRisk `json:"global_risk,omitempty"` // where the plan states a prior
 }
 
 // perfect is the model with the readings that a detector without fault would give.
@@ -77,7 +80,7 @@ func Expect(p *plan.Plan) (*Expectation, error) {
 	x.Gain, x.Offset, x.SeriesResistance = Estimate{Unit: "1"}, Estimate{Unit: unit}, Estimate{Unit: "ohm"}
 	x.Correlation = map[string]number{}
 	if x.Separable = e.separable(); x.Separable {
-		x.Offset, x.SeriesResistance = e.value(w.offset, unit), e.value(w.series, "ohm")
+		x.Offset, x.SeriesResistance = m.value(e, w.offset, unit), m.value(e, w.series, "ohm")
 		x.Correlation["offset,series_resistance"] = number(e.correlation(w.offset, w.series))
 	} else {
 		x.Parting = Part(p)
@@ -86,7 +89,7 @@ func Expect(p *plan.Plan) (*Expectation, error) {
 		}
 	}
 	if w := e.layout; w.gains == 1 {
-		x.Gain = e.value(0, "1")
+		x.Gain = m.value(e, 0, "1")
 		if x.Separable {
 			x.Correlation["gain,offset"] = number(e.correlation(0, w.offset))
 			x.Correlation["gain,series_resistance"] = number(e.correlation(0, w.series))
@@ -102,7 +105,18 @@ func Expect(p *plan.Plan) (*Expectation, error) {
 	}
 	x.GainByRange = m.gains(e, byRange, func(i int) KeyGain { return KeyGain{Range: p.Detector.Ranges[i]} }).Gain
 	m.expectSteps(x, e)
-	return x, nil
+	shell := &Evaluation{Plan: p, model: m, deciding: e}
+	x.Limiting, err = shell.limiting(x.capabilities())
+	return x, err
+}
+
+// capabilities lists the steps with their limits and ratios.
+func (x *Expectation) capabilities() (ids []string, limit, capability []float64) {
+	for _, s := range x.Steps {
+		ids = append(ids, s.ID)
+		limit, capability = append(limit, float64(s.Limit)), append(capability, float64(s.Ratio))
+	}
+	return ids, limit, capability
 }
 
 // expectSteps fills the steps, with the uncertainties that the errors will have.
@@ -115,15 +129,37 @@ func (m *model) expectSteps(x *Expectation, e *estimate) {
 		exp := m.expect(i)
 		one, _ := o.scatter.one()
 		full := m.plan.Detector.Ranges[s.Range]
-		limit, _ := m.outcome(o, &errors[i], x.CoverageFactor)
-		U := x.CoverageFactor * errors[i].u
+		j := m.judge(o, &errors[i])
+		limit := j.limit
+		U := errors[i].k * errors[i].u
 		step := ExpectedStep{ID: s.ID, Index: i, Drop: exp.drop, PhaseDeg: exp.phase * 180 / math.Pi, Range: full,
 			Expected: exp.value, UExpected: exp.u, Share: math.Abs(exp.value) / full, SigmaOne: one,
-			Wait: wait(s, m.plan.Detector.Poles, exp.value-before, limit), Limit: number(limit), U: U, Ratio: number(limit / U)}
+			Wait: wait(s, m.plan.Detector.Poles, exp.value-before, limit), Limit: number(limit), U: U, Ratio: number(j.capability)}
+		if p := m.plan.Decision.Prior; p != nil && j.outcome != decision.NotJudged {
+			step.Global = globalRisk(p, math.Abs(exp.value), full, errors[i].u, j)
+		}
 		before = exp.value
 		x.BenchTime += step.Wait + float64(s.Repeats-1)*wait(s, m.plan.Detector.Poles, 0, limit)
 		x.Steps = append(x.Steps, step)
 	}
+}
+
+// GlobalRisk is what the plan's rule does to detectors that are not yet measured
+// (JCGM 106:2012, clause 9), at one step.
+type GlobalRisk struct {
+	Prior    float64 `json:"prior_sd"`       // of the detectors' errors there, V
+	Consumer float64 `json:"consumers_risk"` // probability that one is accepted and bad
+	Producer float64 `json:"producers_risk"` // probability that one is rejected and good
+}
+
+// globalRisk counts as accepted what passes outright.
+func globalRisk(p *plan.Prior, applied, full, u float64, j judgement) *GlobalRisk {
+	sd := p.Reading*applied + p.Range*full
+	if sd == 0 {
+		return nil
+	}
+	g := decision.Global(decision.Prior{SD: sd}, u, decision.Symmetric(j.limit), decision.Symmetric(j.acceptance))
+	return &GlobalRisk{Prior: sd, Consumer: g.Consumer, Producer: g.Producer}
 }
 
 // settled is the share of a change that may be left when a reading is taken.

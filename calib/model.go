@@ -24,7 +24,7 @@ import (
 // layout says where the parameters stand in the vector that is fitted.
 // An index of -1 means that the parameter is held at zero (a gain: at one).
 type layout struct {
-	gain    []int // by observation
+	gain    []int // by observation; nil: a gain of 1 at all
 	offset  int
 	offsetY int
 	series  int
@@ -32,6 +32,14 @@ type layout struct {
 	inputs  int   // the first of the inputs; -1: at their stated values
 	n       int
 	gains   int
+}
+
+// gainAt is where the gain of an observation stands; -1 where it is 1.
+func (w *layout) gainAt(i int) int {
+	if w.gain == nil {
+		return -1
+	}
+	return w.gain[i]
 }
 
 // parameters are the values that a layout's vector stands for.
@@ -88,7 +96,7 @@ func (m *model) predict(i int, v parameters, out *row) {
 	o := &m.obs[i]
 	d := &m.forward.drops[m.forward.of[o.step]]
 	s := &m.plan.Steps[o.step]
-	g := v.get(v.where.gain[i], 1)
+	g := v.get(v.where.gainAt(i), 1)
 	full := 1.0
 	if m.plan.Fit.OffsetPerRange {
 		full = m.plan.Detector.Ranges[o.rng]
@@ -217,7 +225,7 @@ func (m *model) fill(w *layout, i int, r *row, set func(column int, d complex128
 			set(column, d)
 		}
 	}
-	at(w.gain[i], r.byGain)
+	at(w.gainAt(i), r.byGain)
 	at(w.offset, r.byOffset)
 	at(w.offsetY, r.byY)
 	at(w.series, r.bySeries)

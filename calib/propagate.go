@@ -4,6 +4,7 @@ import (
 	"math"
 
 	"rungproof/calib/fit"
+	"rungproof/calib/uncertainty"
 )
 
 // propagation carries the uncertainties of the readings and of the stated inputs
@@ -18,10 +19,12 @@ type propagation struct {
 	params []int // the fitted parameters that an expected reading depends on
 	byRead [][]float64
 	byNu   [][]float64 // by prior: the inputs, then the series resistance where the plan expects one
+	priors []float64   // scratch
+	lines  []uncertainty.Line
 }
 
 func newPropagation(m *model, e *estimate) *propagation {
-	p := &propagation{m: m, e: e, result: e.result, row: make([]int, len(m.obs))}
+	p := &propagation{m: m, e: e, result: e.result, row: make([]int, len(m.obs)), priors: make([]float64, len(m.forward.inputs)+1)}
 	k := 0
 	for i := range m.obs {
 		p.row[i] = -1
@@ -60,23 +63,33 @@ func part(z complex128, axis int) float64 {
 }
 
 // u is the standard uncertainty of observation i's error along (axis 0) or
-// across (axis 1) the expected phasor.
-func (p *propagation) u(i int, r *row, axis int) float64 {
-	readings, inputs := p.variances(i, r, axis, nil)
-	return math.Sqrt(readings + inputs)
+// across (axis 1) the expected phasor, and the coverage factor of its budget.
+func (p *propagation) u(i int, r *row, axis int) (u, k float64) {
+	readings, inputs := p.variances(i, r, axis, p.priors)
+	p.lines = append(p.lines[:0], uncertainty.Line{Name: "readings", U: math.Sqrt(readings), DOF: p.m.obs[i].dof, Sensitivity: 1})
+	for j, in := range p.m.forward.inputs {
+		if c := p.priors[j]; c != 0 {
+			p.lines = append(p.lines, uncertainty.Line{Name: in.Name, U: in.U, Shape: shapeOf(in.Shape), DOF: in.DOF, Sensitivity: c})
+		}
+	}
+	if p.e.prior >= 0 {
+		x := p.m.plan.Fit.SeriesExpected
+		p.lines = append(p.lines, uncertainty.Line{Name: "series resistance expected", U: x.U(), Shape: shapeOf(x.Shape), DOF: x.DOF, Sensitivity: p.priors[p.e.prior]})
+	}
+	return math.Sqrt(readings + inputs), p.m.factor(p.lines)
 }
 
 // variances are the parts of the readings and of the inputs in the variance of
-// an error. Where by is not nil it receives the derivative of the error with
-// respect to each prior value.
-func (p *propagation) variances(i int, r *row, axis int, by []float64) (readings, inputs float64) {
+// an error; c receives the derivative of the error with respect to each prior
+// value.
+func (p *propagation) variances(i int, r *row, axis int, c []float64) (readings, inputs float64) {
 	o := &p.m.obs[i]
 	s := o.along
 	if axis == 1 {
 		s = o.across
 	}
 	readings = s * s
-	c := make([]float64, len(p.m.forward.inputs)+1)
+	clear(c)
 	for _, d := range r.byInput {
 		c[d.input] -= part(d.d, axis)
 	}
@@ -95,7 +108,6 @@ func (p *propagation) variances(i int, r *row, axis int, by []float64) (readings
 			c[k] -= dq * d
 		}
 	}
-	copy(by, c)
 	for k, in := range p.m.forward.inputs {
 		inputs += c[k] * c[k] * in.U * in.U
 	}

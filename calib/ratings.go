@@ -94,13 +94,13 @@ func (x *Expectation) ranges(p *plan.Plan) []Finding {
 	var out []Finding
 	if len(over) > 0 {
 		out = append(out, Finding{Kind: "overload expected",
-			Text: fmt.Sprintf("%s beyond full scale: step%s %s.", counted(len(over), "reading"), plural(len(over)), List(over)),
+			Text: fmt.Sprintf("%s beyond full scale: step%s %s.", Counted(len(over), "reading"), plural(len(over)), List(over)),
 			Do:   "choose a larger range or a lower amplitude."})
 	}
 	if len(under) > 0 {
 		out = append(out, Finding{Kind: "range under-used",
 			Text: fmt.Sprintf("%s under a tenth of full scale while a smaller range would hold it: step%s %s.",
-				counted(len(under), "reading"), plural(len(under)), List(under)),
+				Counted(len(under), "reading"), plural(len(under)), List(under)),
 			Do: `choose a smaller range, or range = "auto".`})
 	}
 	return out

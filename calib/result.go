@@ -15,7 +15,11 @@ type Estimate struct {
 	URandom float64 // the part of it that the readings bring
 	Unit    string
 	Known   bool
+	K       float64 // coverage factor, from the budget of this quantity
 }
+
+// Expanded is the expanded uncertainty U = k·u.
+func (e Estimate) Expanded() float64 { return e.K * e.U }
 
 // MarshalJSON writes null for what is not known.
 func (e Estimate) MarshalJSON() ([]byte, error) {
@@ -23,12 +27,13 @@ func (e Estimate) MarshalJSON() ([]byte, error) {
 		Value   number `json:"value"`
 		U       number `json:"u"`
 		URandom number `json:"u_random"`
+		K       number `json:"k"` // coverage factor: U = k·u
 		Unit    string `json:"unit"`
 	}
-	out := plain{number(e.Value), number(e.U), number(e.URandom), e.Unit}
+	out := plain{number(e.Value), number(e.U), number(e.URandom), number(e.K), e.Unit}
 	if !e.Known {
 		nan := number(math.NaN())
-		out = plain{nan, nan, nan, e.Unit}
+		out = plain{nan, nan, nan, nan, e.Unit}
 	}
 	return json.Marshal(out)
 }
@@ -59,6 +64,7 @@ type Result struct {
 	CoverageFactor float64       `json:"coverage_factor"` // U = k·u
 	Repeatability  Repeatability `json:"repeatability"`
 	Condition      *Interval     `json:"series_resistance_for_pass,omitempty"` // not separable: where all steps pass, Ω
+	Limiting       *Limiting     `json:"limited_by_the_bench,omitempty"`
 	Inputs         []InputResult `json:"inputs"`
 	Software       string        `json:"software,omitempty"`
 	PlanSHA256     string        `json:"plan_sha256,omitempty"`
@@ -117,12 +123,13 @@ func (g KeyGain) MarshalJSON() ([]byte, error) {
 		Value     number  `json:"value"`
 		U         number  `json:"u"`
 		URandom   number  `json:"u_random"`
+		K         number  `json:"k"`
 		Unit      string  `json:"unit"`
 		Limit     *number `json:"limit,omitempty"`
 		Outcome   string  `json:"outcome,omitempty"`
-	}{Unit: g.Unit, Value: number(math.NaN()), U: number(math.NaN()), URandom: number(math.NaN())}
+	}{Unit: g.Unit, Value: number(math.NaN()), U: number(math.NaN()), URandom: number(math.NaN()), K: number(math.NaN())}
 	if g.Known {
-		flat.Value, flat.U, flat.URandom = number(g.Value), number(g.U), number(g.URandom)
+		flat.Value, flat.U, flat.URandom, flat.K = number(g.Value), number(g.U), number(g.URandom), number(g.K)
 	}
 	key := number(g.Range + g.Frequency)
 	if g.Frequency != 0 {
@@ -155,9 +162,14 @@ type StepResult struct {
 	Reading      number           `json:"reading"` // mean, along the expected phasor
 	UReading     number           `json:"u_reading"`
 	Error        number           `json:"error"` // reading less expected, the fitted series resistance included
+	K            float64          `json:"k"`     // coverage factor: U = k·u
 	U            number           `json:"U"`
 	Limit        number           `json:"limit"`
-	PhaseError   number           `json:"phase_error"` // rad, two-phase readings: what is left after the fitted phase
+	Acceptance   number           `json:"acceptance_limit"`          // the largest error that passes, V; null where none can
+	Conformity   number           `json:"probability_of_conformity"` // that the true error is within the limit
+	Risk         number           `json:"risk_of_outcome"`           // that an accepted one is bad, or a rejected one good
+	Capability   number           `json:"capability"`                // limit over U
+	PhaseError   number           `json:"phase_error"`               // rad, two-phase readings: what is left after the fitted phase
 	UPhase       number           `json:"U_phase"`
 	PhaseLimit   number           `json:"phase_limit"`
 	Outcome      decision.Outcome `json:"outcome"`

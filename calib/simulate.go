@@ -23,8 +23,14 @@ type Truth struct {
 
 // Simulator draws readings as the bench of a plan would have given them.
 type Simulator struct {
-	m *model
+	m      *model
+	errors []float64
 }
+
+// Errors are the true errors of the steps of the last draw, in V: what a step's
+// mean reading without noise has over the voltage truly applied there, along the
+// expected phasor.
+func (s *Simulator) Errors() []float64 { return s.errors }
 
 // NewSimulator prepares the simulation of a plan's readings.
 func NewSimulator(p *plan.Plan) *Simulator {
@@ -42,8 +48,10 @@ func (s *Simulator) Readings(t Truth, random *rand.Rand) *reading.Set {
 	}
 	m.forward.compute(nu, t.Series)
 	set := &reading.Set{File: "simulated"}
+	s.errors = s.errors[:0]
 	for i := range m.obs {
 		o := &m.obs[i]
+		s.errors = append(s.errors, m.trueError(i, nu, &t))
 		for range m.plan.Steps[o.step].Repeats {
 			z := m.one(i, nu, &t, random)
 			if m.plan.Detector.Reads == plan.Magnitude {
@@ -66,15 +74,7 @@ func (m *model) one(i int, nu []float64, t *Truth, random *rand.Rand) complex128
 	o := &m.obs[i]
 	step := &m.plan.Steps[o.step]
 	d := &m.forward.drops[m.forward.of[o.step]]
-	g := t.Gain
-	if k, ok := t.RangeGain[o.rng]; ok {
-		g *= k
-	}
-	full := 1.0
-	if m.plan.Fit.OffsetPerRange {
-		full = m.plan.Detector.Ranges[o.rng]
-	}
-	offset := complex(t.Offset*full, t.OffsetY*full)
+	g, offset := t.at(m, o.rng)
 	noise := complex(o.noise*random.NormFloat64(), o.noise*random.NormFloat64())
 	scatter := m.plan.Detector.Stability * random.NormFloat64()
 	size, _ := d.size()
@@ -84,14 +84,52 @@ func (m *model) one(i int, nu []float64, t *Truth, random *rand.Rand) complex128
 	case plan.Magnitude:
 		return complex(g*size*(1+scatter), 0) + offset + noise
 	}
+	return complex(g*size*m.cosineOf(o, nu)+scatter*d.stated, 0) + offset + noise
+}
+
+// trueError is what a step's reading would be without noise, less the voltage
+// applied there, both with the inputs at nu.
+func (m *model) trueError(i int, nu []float64, t *Truth) float64 {
+	o := &m.obs[i]
+	step := &m.plan.Steps[o.step]
+	size, unit := m.forward.drops[m.forward.of[o.step]].size()
+	g, offset := t.at(m, o.rng)
+	if m.axes == 2 {
+		along := unit * cmplx.Rect(1, t.Phase-step.Phase)
+		return (g-1)*size + real(offset*cmplx.Conj(along))
+	}
+	c := 1.0
+	if m.plan.Detector.Reads == plan.InPhase {
+		c = m.cosineOf(o, nu)
+	}
+	return (g-1)*size*c + real(offset)
+}
+
+// at is the gain and the offset, V rms, on one range.
+func (t *Truth) at(m *model, rng int) (g float64, offset complex128) {
+	g = t.Gain
+	if k, ok := t.RangeGain[rng]; ok {
+		g *= k
+	}
+	full := 1.0
+	if m.plan.Fit.OffsetPerRange {
+		full = m.plan.Detector.Ranges[rng]
+	}
+	return g, complex(t.Offset*full, t.OffsetY*full)
+}
+
+// cosineOf is what turning the reference leaves of an in-phase reading.
+func (m *model) cosineOf(o *observation, nu []float64) float64 {
+	step := &m.plan.Steps[o.step]
+	f := m.forward.drops[m.forward.of[o.step]].frequency
 	c := math.Cos(step.Phase)
-	if k := m.forward.cosine[d.frequency]; k >= 0 {
+	if k := m.forward.cosine[f]; k >= 0 {
 		c *= 1 - nu[k]
 	}
-	if k := m.forward.turn[d.frequency]; k >= 0 {
+	if k := m.forward.turn[f]; k >= 0 {
 		c += nu[k] * math.Sin(step.Phase)
 	}
-	return complex(g*size*c+scatter*d.stated, 0) + offset + noise
+	return c
 }
 
 // draw is one deviation of a distribution with mean 0 and standard deviation 1.

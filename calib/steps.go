@@ -4,6 +4,8 @@ import (
 	"math"
 	"math/cmplx"
 	"sort"
+
+	"rungproof/calib/decision"
 )
 
 // expectation is what a detector without fault reads at a step, the wiring as stated.
@@ -18,8 +20,7 @@ type expectation struct {
 func (m *model) expect(i int) expectation {
 	o := &m.obs[i]
 	d := &m.forward.drops[m.forward.of[o.step]]
-	w := &layout{gain: make([]int, len(m.obs)), offset: -1, offsetY: -1, series: -1, phase: make([]int, len(m.plan.Frequencies)), inputs: -1}
-	w.gain[i] = -1
+	w := &layout{offset: -1, offsetY: -1, series: -1, phase: make([]int, len(m.plan.Frequencies)), inputs: -1}
 	for f := range w.phase {
 		w.phase[f] = -1
 	}
@@ -53,25 +54,41 @@ func (e *Evaluation) step(k int, found *stepError, left deviation) StepResult {
 	o := &m.obs[k]
 	x := m.expect(k)
 	one, _ := o.scatter.one()
-	limit, outcome := m.outcome(o, found, e.Result.CoverageFactor)
+	j := m.judge(o, found)
 	s := StepResult{
 		Index: o.step, ID: e.Plan.Steps[o.step].ID,
 		Drop: x.drop, PhaseDeg: x.phase * 180 / math.Pi, Range: e.Plan.Detector.Ranges[o.rng],
 		SigmaOne: one, Expected: x.value, UExpected: x.u,
 		Reading: number(found.reading), UReading: number(o.along),
-		Error: number(found.e), U: number(e.Result.CoverageFactor * found.u), Limit: number(limit),
+		Error: number(found.e), U: number(found.k * found.u), K: found.k, Limit: number(j.limit),
 		PhaseError: number(math.NaN()), UPhase: number(math.NaN()), PhaseLimit: number(math.NaN()),
-		Outcome: outcome, Beyond: o.beyond, Flags: o.flags, Repeats: o.n,
+		Outcome: j.outcome, Beyond: o.beyond, Flags: o.flags, Repeats: o.n,
+		Acceptance: number(j.acceptance), Conformity: number(j.conformity), Capability: number(j.capability),
 		Current: x.current, Unexplained: number(left.value), UUnexplained: number(left.u), Standardised: number(left.standardised),
 	}
 	if found.uPhase > 0 {
-		s.PhaseError, s.UPhase = number(found.phase), number(e.Result.CoverageFactor*found.uPhase)
+		s.PhaseError, s.UPhase = number(found.phase), number(found.kPhase*found.uPhase)
 		if l := e.Plan.LimitAt(s.Range, e.Plan.Steps[o.step].Frequency); l != nil {
 			s.PhaseLimit = number(l.Phase)
 		}
 	}
 	return s
 }
+
+// settleRisk finds the probability that the outcome, taken as it stands, is wrong.
+func (s *StepResult) settleRisk() {
+	switch s.Outcome {
+	case decision.NotJudged:
+		s.Risk = number(math.NaN())
+	case decision.Pass, decision.ConditionalPass:
+		s.Risk = number(decision.Accepting(float64(s.Error), s.u(), float64(s.Limit)))
+	default:
+		s.Risk = number(decision.Rejecting(float64(s.Error), s.u(), float64(s.Limit)))
+	}
+}
+
+// u is the standard uncertainty of the step's error.
+func (s *StepResult) u() float64 { return float64(s.U) / s.K }
 
 // deviation is what is left of an observation when the drop without unknown
 // series resistance is taken off.
@@ -113,7 +130,7 @@ func (m *model) unexplained(e *estimate) []deviation {
 // condition is the interval of series resistance for which every step passes,
 // where it cannot be told from an offset. To first order in r, which the
 // ladder's large resistor makes good to r/R_top.
-func (m *model) condition(e *estimate, found []stepError, k float64) *Interval {
+func (m *model) condition(e *estimate, found []stepError) *Interval {
 	from, to := math.Inf(-1), math.Inf(1)
 	bound := func(slope, room float64) { // slope·r ≤ room
 		switch {
@@ -125,26 +142,21 @@ func (m *model) condition(e *estimate, found []stepError, k float64) *Interval {
 			from, to = math.Inf(1), math.Inf(-1)
 		}
 	}
-	m.forward.compute(m.forward.stated(), 0)
-	w := *e.layout
-	w.offset, w.offsetY, w.inputs = -1, -1, -1
-	w.gain = make([]int, len(m.obs))
-	for i := range w.gain {
-		w.gain[i] = -1
-	}
-	v := w.at(e.result.P, m.forward.stated())
-	v.noiseless = true
+	v := m.faultless(e)
+	m.forward.compute(v.nu, v.r)
 	var r row
 	for i := range m.obs {
 		o := &m.obs[i]
-		full := m.plan.Detector.Ranges[o.rng]
-		l := m.plan.LimitAt(full, m.plan.Steps[o.step].Frequency)
+		l := m.plan.LimitAt(m.plan.Detector.Ranges[o.rng], m.plan.Steps[o.step].Frequency)
 		if l == nil {
 			continue
 		}
 		m.predict(i, v, &r)
 		d, s := real(r.bySeries), &found[i]
-		room := l.Reading*math.Abs(s.expected) + l.Range*full - m.guard(k*s.u)
+		room := m.judge(o, s).acceptance
+		if math.IsNaN(room) {
+			return nil
+		}
 		grows := l.Reading * sign(s.expected) * d
 		bound(-d-grows, room-s.e)
 		bound(d-grows, room+s.e)

@@ -12,8 +12,8 @@ func plural(n int) string {
 	return "s"
 }
 
-// counted is "1 reading" or "3 readings".
-func counted(n int, what string) string { return fmt.Sprintf("%d %s%s", n, what, plural(n)) }
+// Counted is "1 reading" or "3 readings".
+func Counted(n int, what string) string { return fmt.Sprintf("%d %s%s", n, what, plural(n)) }
 
 // List names the first few of many.
 func List(names []string) string {

@@ -49,6 +49,7 @@ func figureDecidingLine(e *calib.Evaluation) figureDeciding {
 	}
 	if !f.separable && r.Fit.Intercept != nil && r.Fit.AsSeries != nil {
 		f.offset, f.series = *r.Fit.Intercept, *r.Fit.AsSeries
+		f.series.Known = f.series.Known && figureFinite(f.series.Value, f.series.U) && f.series.U > 0
 	}
 	if math.IsNaN(f.correlation) {
 		f.correlation = 0
@@ -152,17 +153,22 @@ func (f figureDeciding) keys(e *calib.Evaluation) []figureKey {
 		return nil
 	}
 	if !f.separable {
-		return []figureKey{
-			{words: "all of it an offset: " + figureNumberOf(f.offset), line: figureFit},
-			{words: "all of it a series resistance: " + figureNumberOf(f.series), line: figureOther},
+		keys := []figureKey{{words: "all of it an offset: " + figureNumberOf(f.offset), line: figureFit}}
+		if f.series.Known {
+			keys = append(keys, figureKey{words: "all of it a series resistance: " + figureNumberOf(f.series), line: figureOther})
 		}
+		return keys
 	}
 	keys := []figureKey{{words: "offset " + figureNumberOf(f.offset), mark: figureIntercept}}
 	if f.perRange {
 		keys[0].mark.Shape = nil
 	}
 	if f.series.Known {
-		keys = append(keys, figureKey{words: "slope: series resistance " + figureNumberOf(f.series), line: figureFit, shade: figureShade})
+		k := figureKey{words: "slope: series resistance " + figureNumberOf(f.series), line: figureFit, shade: figureShade}
+		if f.perRange {
+			k.shade = nil
+		}
+		keys = append(keys, k)
 	}
 	return keys
 }
@@ -176,6 +182,8 @@ func (f figureDeciding) caption(points []figureLeft) string {
 	switch lines := len(figureDifferent(points, f)); {
 	case !f.offset.Known:
 		return c + " The readings do not determine the line."
+	case !f.separable && figureNoCurrent(points):
+		return c + " The line is the offset; no current flows that would show a series resistance."
 	case !f.separable:
 		return c + " The level line takes all of it for an offset, the broken one for a series resistance; a point at another current would tell which."
 	case f.perRange:

@@ -30,12 +30,17 @@ func jointFigure(e *calib.Evaluation) *figureSheet {
 	case f.Separable && f.Offset.Known && f.SeriesResistance.Known && f.Offset.U > 0 && f.SeriesResistance.U > 0:
 		s.region(f)
 	case !f.Separable && f.Intercept != nil && f.AsSeries != nil && f.Intercept.Known && f.AsSeries.Known &&
-		f.AsSeries.Value != 0 && f.Intercept.Value != 0:
+		figureTells(*f.AsSeries) && figureTells(*f.Intercept):
 		s.valley(e)
 	default:
 		return nil
 	}
 	return s
+}
+
+// figureTells is false for an estimate so near to zero that a line through it has no direction.
+func figureTells(x calib.Estimate) bool {
+	return figureFinite(x.Value, x.U) && x.U > 0 && math.Abs(x.Value) > 0.01*x.U
 }
 
 // jointPanel makes the panel for a span of each, zero shown where it is near.
@@ -120,8 +125,8 @@ func (s *figureSheet) valley(e *calib.Evaluation) {
 	o0, r0, k := f.Intercept.Value, f.AsSeries.Value, e.Result.CoverageFactor
 	half := k * f.Intercept.U
 	o, r := newFigureSpan(), newFigureSpan()
-	o.add(0, o0, o0+math.Copysign(half, o0))
-	r.add(0, r0)
+	o.add(0, o0-half, o0+half)
+	r.add(0, r0-k*f.AsSeries.U, r0+k*f.AsSeries.U)
 	panel, scaleO, scaleR := jointPanel(o, r, f.Intercept.Unit)
 	at := func(r, aside float64) figureXY { return figureXY{(o0*(1-r/r0) + aside) / scaleO, r / scaleR} }
 	low, high := panel.Y.Min*scaleR, panel.Y.Max*scaleR

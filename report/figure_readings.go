@@ -85,7 +85,7 @@ func readingsFigure(e *calib.Evaluation) *figureSheet {
 	s.caption = "Above, each step's reading: points leave the line where an offset and a series resistance count, at the low end. " +
 		fmt.Sprintf("Below, its error in percent of the reading expected%s, on a scale that is linear within ±%s %% and logarithmic beyond.",
 			figureBars(len(points)), figureNumber(lowest, max(0, -int(math.Floor(math.Log10(lowest)+1e-9)))))
-	if e.Plan.Detector.Reads == plan.InPhase {
+	if slices.ContainsFunc(e.Result.Steps, func(r calib.StepResult) bool { return r.Expected < 0 }) {
 		s.caption += " With the reference turned by 180° a gain shows on the same side and an offset on the other."
 	}
 	if n := len(e.Result.Steps) - len(points); n > 0 {
@@ -203,7 +203,7 @@ func figureAmplitudes(e *calib.Evaluation, points int) []figureKey {
 			keys = append(keys, figureKey{words: fmt.Sprintf("and %d more", len(used)-most)})
 			break
 		}
-		m := figureCrowded(figureMark(i), points)
+		m := figureMark(i)
 		words := a.Shown
 		if len(keys) == 0 {
 			words = "generator at " + words

@@ -57,11 +57,14 @@ func (p *figurePanel) letter(handler text.Handler) {
 		x, y := a.Tick.Label.XAlign, a.Tick.Label.YAlign
 		a.Tick.Label = figureText(figureTickSize, xfont.WeightNormal, handler)
 		a.Tick.Label.XAlign, a.Tick.Label.YAlign = x, y
+		if _, blank := a.Tick.Marker.(figureUnlabelled); blank {
+			a.Tick.Label.Font.Size = 1
+		}
 	}
 }
 
 // figureMargin is the room for a line of words beside a panel.
-const figureMargin = figureLabelSize + 6
+const figureMargin = figureLabelSize + 9
 
 // inside is what the words of a panel leave of its tile.
 func (p *figurePanel) inside(c draw.Canvas) draw.Canvas {
@@ -74,8 +77,9 @@ func (p *figurePanel) inside(c draw.Canvas) draw.Canvas {
 	return draw.Crop(c, margin(p.y), 0, margin(p.x), -margin(p.title))
 }
 
-// words writes them: along the axes and above, in the middle of the data area.
-func (p *figurePanel) words(tile draw.Canvas, handler text.Handler) {
+// words writes them: along the axes and above, in the middle of the data area,
+// those of the vertical axis at the given left edge.
+func (p *figurePanel) words(tile draw.Canvas, left vg.Length, handler text.Handler) {
 	style := figureText(figureLabelSize, xfont.WeightNormal, handler)
 	style.XAlign = text.XCenter
 	data := p.DataCanvas(p.inside(tile))
@@ -88,7 +92,7 @@ func (p *figurePanel) words(tile draw.Canvas, handler text.Handler) {
 	}
 	if p.y != "" {
 		style.Rotation = math.Pi / 2
-		tile.FillText(style, vg.Point{X: tile.Min.X + figureLabelSize, Y: c.Y}, p.y)
+		tile.FillText(style, vg.Point{X: left + figureLabelSize, Y: c.Y}, p.y)
 	}
 }
 
@@ -111,7 +115,11 @@ func (s *figureSheet) draw(c draw.Canvas, handler text.Handler) {
 	}
 	for i, tile := range s.tiles(c) {
 		s.panels[i].Draw(s.panels[i].inside(tile))
-		s.panels[i].words(tile, handler)
+		left := c.Min.X // the same for panels above one another
+		if s.beside {
+			left = tile.Min.X
+		}
+		s.panels[i].words(tile, left, handler)
 	}
 }
 
@@ -124,6 +132,9 @@ func (s *figureSheet) drawKeys(c draw.Canvas, handler text.Handler) vg.Length {
 		width, swatch := style.Width(k.words), vg.Length(24)
 		if k.line.Width == 0 && k.shade == nil {
 			swatch = 8 // a mark alone
+			if k.mark.Shape == nil {
+				swatch = -gap // words alone
+			}
 		}
 		if x > c.Min.X && x+swatch+gap+width > c.Max.X {
 			x, y = c.Min.X, y-row

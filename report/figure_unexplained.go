@@ -45,11 +45,14 @@ func unexplainedFigure(e *calib.Evaluation) *figureSheet {
 	} else {
 		s.panels[0].title = ""
 	}
-	if !e.Result.Fit.Separable {
+	switch {
+	case line.separable || !line.offset.Known:
+	case figureNoCurrent(points):
+		s.note = "No current: only an offset shows here."
+	case figureOneCurrent(points):
+		s.note = "One current: an offset and a series resistance look the same here."
+	default:
 		s.note = "An offset and a series resistance cannot be told apart by these readings."
-		if figureOneCurrent(points) {
-			s.note = "One current: an offset and a series resistance look the same here."
-		}
 	}
 	if all.spread {
 		s.caption += " Points of one current are moved apart along the line, in the order of the plan."
@@ -91,6 +94,11 @@ func figureOneCurrent(points []figureLeft) bool {
 	return x.high-x.low <= 0.05*math.Max(x.high, -x.low)
 }
 
+// figureNoCurrent tells whether the source was off at all points.
+func figureNoCurrent(points []figureLeft) bool {
+	return !slices.ContainsFunc(points, func(p figureLeft) bool { return p.current != 0 })
+}
+
 // figureNearZero are the points of currents small against the largest, where
 // there are such that still have a current; they tell the intercept best.
 func figureNearZero(points []figureLeft) []figureLeft {
@@ -98,14 +106,12 @@ func figureNearZero(points []figureLeft) []figureLeft {
 	for _, p := range points {
 		largest = math.Max(largest, math.Abs(p.current))
 	}
-	current := false
 	for _, p := range points {
 		if math.Abs(p.current) <= 0.25*largest {
 			near = append(near, p)
-			current = current || p.current != 0
 		}
 	}
-	if !current {
+	if figureNoCurrent(near) {
 		return nil
 	}
 	return near
@@ -121,8 +127,8 @@ type figureView struct {
 }
 
 // newFigureView chooses the scale by the line and shows the points whose error
-// bars are small against it; every one of these is in the picture,
-// an outlier too.
+// bars are small against it, and the most certain ones in any case; every one of
+// these is in the picture, an outlier too.
 func newFigureView(points []figureLeft, line figureDeciding) figureView {
 	const largestBar = 0.12 // half of an error bar, over the height of the picture
 	var v figureView
@@ -146,7 +152,7 @@ func newFigureView(points []figureLeft, line figureDeciding) figureView {
 	y := newFigureSpan()
 	y.add(0)
 	for _, p := range points {
-		if p.U > largestBar*height {
+		if p.U > math.Max(largestBar*height, 1.5*least) {
 			v.outside++
 			continue
 		}
@@ -254,7 +260,7 @@ func figureNumberOf(x calib.Estimate) string {
 	case "ohm":
 		return figureMinus(quantity.Concise(x.Value, x.U, "Ω"))
 	case "1":
-		return figureMinus(quantity.SharePlusMinus(x.Value, x.U)) + " of range"
+		return figureMinus(quantity.Share(x.Value, 4)) + " of range, u = " + quantity.Share(x.U, 2)
 	}
 	return figureMinus(quantity.Concise(x.Value, x.U, x.Unit))
 }

@@ -47,15 +47,25 @@ func htmlEvaluate(t testing.TB, planText, rows string) *calib.Evaluation {
 	return e
 }
 
-// htmlCase is a page with its figures, of one of the cases of package calib.
-func htmlCase(t testing.TB, name string) (page string, e *calib.Evaluation) {
+func htmlCase(t testing.TB, name string) *calib.Evaluation {
 	t.Helper()
-	e = htmlEvaluate(t, htmlRead(t, name+".toml"), htmlRead(t, name+".csv"))
-	figures, err := Figures(e)
-	if err != nil {
-		t.Fatal(err)
+	return htmlEvaluate(t, htmlRead(t, name+".toml"), htmlRead(t, name+".csv"))
+}
+
+var htmlPages = map[string]string{} // with their figures, which take a while to draw
+
+// htmlPage is the page of one of the cases of package calib.
+func htmlPage(t testing.TB, name string) string {
+	t.Helper()
+	if htmlPages[name] == "" {
+		e := htmlCase(t, name)
+		figures, err := Figures(e)
+		if err != nil {
+			t.Fatal(err)
+		}
+		htmlPages[name] = htmlOf(t, e, figures)
 	}
-	return htmlOf(t, e, figures), e
+	return htmlPages[name]
 }
 
 // perfectRows are readings that show a detector without fault.
@@ -102,7 +112,7 @@ func replaced(t testing.TB, s string, pairs ...string) string {
 
 func TestHTMLHasEverySectionInOrder(t *testing.T) {
 	for _, name := range htmlCases {
-		page, e := htmlCase(t, name)
+		page, e := htmlPage(t, name), htmlCase(t, name)
 		at := 0
 		for _, id := range []string{"identity", "summary", "findings", "figures", "gains", "steps", "inputs", "standards", "method", "cautions", "plan", "origin"} {
 			i := strings.Index(page[at:], `<section id="`+id+`"`)
@@ -126,7 +136,7 @@ func TestHTMLHasEverySectionInOrder(t *testing.T) {
 }
 
 func TestHTMLVerdictIsWordAndSymbol(t *testing.T) {
-	page, _ := htmlCase(t, "arrival")
+	page := htmlPage(t, "arrival")
 	if want := `<p class="word"><span class="symbol" aria-hidden="true">✗</span>fail</p>`; !strings.Contains(page, want) {
 		t.Errorf("the page has no %s", want)
 	}
@@ -176,7 +186,7 @@ func skeleton(t testing.TB, page string) []string {
 
 func TestHTMLIsWellFormedAndStandsAlone(t *testing.T) {
 	for _, name := range htmlCases {
-		page, _ := htmlCase(t, name)
+		page := htmlPage(t, name)
 		for _, tag := range skeleton(t, page) {
 			if regexp.MustCompile(`(?i)^(script|iframe|object|embed|link|form|base)\b|\son[a-z]+`).MatchString(tag) {
 				t.Errorf("%s: the page has <%s>", name, tag)
@@ -204,7 +214,8 @@ func TestHTMLEscapesThePlan(t *testing.T) {
 		full := replaced(t, text, `"Arrival check, detector B3"`, s,
 			`"Bench 2"`, s+"\ncustomer = "+s+"\nprocedure = "+s+"\nhumidity = "+s+"\nwarm_up = "+s+"\nnotes = "+s,
 			`"two-phase detector, second-hand"`, s, `"B3-0042"`, s, `"bench multimeter"`, s, `"M7-118"`, s, `"24-0317"`, s, `'bench'`, s,
-			`"ohmmeter"`, s, `error.ohmmeter`, `error.`+s, `"box"`, s, `{ box =`, `{ `+s+` =`, `"A"`, s,
+			`"ohmmeter"`, s, `error.ohmmeter`, `error.`+s, `"box"`, s, `{ box =`, `{ `+s+` =`,
+			`"A"`, `"A`+strings.NewReplacer(`\"`, ``, `'`, ``, ` x=`, ``).Replace(s[1:]),
 			`"top"`, `"1`+s[1:], `"box to detector lead"`, `"2`+s[1:], `"detector cable"`, `"3`+s[1:])
 		return htmlOf(t, htmlEvaluate(t, full, perfectRows(t, full)), nil)
 	}
@@ -224,8 +235,8 @@ func TestHTMLEscapesThePlan(t *testing.T) {
 
 func TestHTMLIsDeterministic(t *testing.T) {
 	for _, name := range htmlCases {
-		a, _ := htmlCase(t, name)
-		if b, _ := htmlCase(t, name); a != b {
+		a := htmlOf(t, htmlCase(t, name), nil)
+		if b := htmlOf(t, htmlCase(t, name), nil); a != b {
 			t.Errorf("%s: two pages of one evaluation differ", name)
 		}
 	}
@@ -233,7 +244,7 @@ func TestHTMLIsDeterministic(t *testing.T) {
 
 // The worths are those of the independent evaluation in testdata/cases, another program's.
 func TestHTMLSaysWhatCannotBeToldApart(t *testing.T) {
-	page, _ := htmlCase(t, "one-amplitude")
+	page := htmlPage(t, "one-amplitude")
 	type worth struct{ Value, U float64 }
 	var reference struct {
 		Fit struct {
@@ -269,6 +280,39 @@ func TestHTMLSaysThatVoltagesAreRMS(t *testing.T) {
 	}
 }
 
+func section(page, id, next string) string {
+	return page[strings.Index(page, `<section id="`+id+`"`):strings.Index(page, `<section id="`+next+`"`)]
+}
+
+// 200 V peak-to-peak is 70.7 V rms (a sine's peak over √2), above what may be touched.
+func TestHTMLPutsDangerIntoTheCautions(t *testing.T) {
+	text := replaced(t, htmlRead(t, "arrival.toml"), `"20 V"`, `"200 V"`, `"19.986(8) V"`, `"199.86(8) V"`, `["100 mV"`, `["1 V", "100 mV"`)
+	page := htmlOf(t, htmlEvaluate(t, text, perfectRows(t, text)), nil)
+	if !strings.Contains(section(page, "cautions", "plan"), "touch voltage") || !strings.Contains(section(page, "findings", "gains"), "see <a href=\"#cautions\">") {
+		t.Error("the cautions do not name the touch voltage, or nothing leads there from the findings")
+	}
+	if strings.Contains(section(page, "findings", "gains"), "touch voltage</b>") {
+		t.Error("the touch voltage stands among the findings too")
+	}
+}
+
+func TestHTMLSaysWhatTheVerdictComesFrom(t *testing.T) {
+	text := htmlRead(t, "arrival.toml")
+	limited := replaced(t, text, "[detector.limits]", "[detector.limits]\ngain = \"1 ppm\"")
+	rows := perfectRows(t, text)
+	for _, x := range []struct{ plan, rows, want string }{
+		{text, rows, "All 52 steps pass. The one nearest to its limit is step"},
+		{limited, rows, "range decides: it is off by"},
+		{text, rows[:strings.Index(rows, "A50,")], "but 3 of 52 have no reading"},
+		{text, strings.Replace(rows, "A52,", "A52,1", 1), "One of 52 steps decides: step A52"},
+		{text[:strings.Index(text, "[detector.limits]")] + text[strings.Index(text, "[error.ohmmeter]"):], rows, "nothing is judged"},
+	} {
+		if page := htmlOf(t, htmlEvaluate(t, x.plan, x.rows), nil); !strings.Contains(page[:strings.Index(page, "</header>")], x.want) {
+			t.Errorf("the verdict's sentence lacks %q: %s", x.want, page[strings.Index(page, "<header>"):strings.Index(page, "</header>")])
+		}
+	}
+}
+
 func TestHTMLShortensManySteps(t *testing.T) {
 	var list []string
 	for i := 1; i <= 110; i++ {
@@ -287,7 +331,7 @@ func TestHTMLShortensManySteps(t *testing.T) {
 }
 
 func TestHTMLTakesNoFigureButPNG(t *testing.T) {
-	_, e := htmlCase(t, "string")
+	e := htmlCase(t, "string")
 	if err := HTML(&bytes.Buffer{}, e, []Figure{{Name: "broken.png", PNG: []byte("GIF89a")}}); err == nil || !strings.Contains(err.Error(), "broken.png") {
 		t.Errorf("a broken figure gives %v", err)
 	}
@@ -300,7 +344,7 @@ func TestChanceOfAWrongPass(t *testing.T) {
 	for _, x := range []struct{ g, coverage, bound, atLeast float64 }{
 		{1, 0.95, 0.025, 0.0249}, {1, twice, 0.025, 0.0227}, {0, 0.95, 0.5, 0.4999}, {0.83, twice, 0.05, 0.048}, {1.5, twice, 0.0016, 0.0013},
 	} {
-		if p := beyond(x.g, x.coverage); p > x.bound+1e-12 || p < x.atLeast {
+		if p := chanceOfWrongPass(x.g, x.coverage); p > x.bound+1e-12 || p < x.atLeast {
 			t.Errorf("guard %g at %g: %g, not just under %g", x.g, x.coverage, p, x.bound)
 		}
 	}

@@ -14,7 +14,7 @@ func method(e *calib.Evaluation) []pair {
 	out := []pair{
 		{"Principle", "A generator of known amplitude drives a ladder of known resistors, and the detector reads the drop at one of the ladder's joints. " +
 			"The expected drop follows from the network of all arms, wires and stray capacitances, loaded by the detector's input, at the frequency of each step and at room temperature."},
-		{"Model", model(p)},
+		{"Model", measurementModel(p)},
 		{"Why several amplitudes", "An offset is the same at every step, while the drop on a series resistance grows with the current: steps at several amplitudes, with the reference turned, or with the source off tell the two apart. " +
 			"They count as told apart where leaving the series resistance free makes the offset's uncertainty no more than 20 times as large."},
 		{"Fit", "Gain, offset and series resistance are estimated together with all uncertain inputs by least squares. Each input's stated value counts as a further observation, weighted by its uncertainty; errors that several inputs share move them together. " +
@@ -26,13 +26,13 @@ func method(e *calib.Evaluation) []pair {
 			"The fitted series resistance is the bench's and is counted as part of what is expected."},
 	}
 	if len(p.Detector.Limits) > 0 {
-		out = append(out, pair{"Decision", rule(p)})
+		out = append(out, pair{"Decision", decisionRule(p)})
 	}
 	return append(out, pair{"Validity", "The result holds for the detector named here, as it was at the time and in the circumstances stated."})
 }
 
-// model is the measurement model in the terms of what the detector reads.
-func model(p *plan.Plan) string {
+// measurementModel is the measurement model in the terms of what the detector reads.
+func measurementModel(p *plan.Plan) string {
 	const drop = "V is the drop, which the unknown series resistance r is part of; g is the detector's gain, o its offset and e the scatter. "
 	switch p.Detector.Reads {
 	case plan.TwoPhase:
@@ -44,8 +44,8 @@ func model(p *plan.Plan) string {
 	return "x = g·V·cos θ·(1 − a) + o + e. " + drop + "θ is the phase of the reference from where it was turned to maximum, and a the loss from setting that maximum with limited care."
 }
 
-// rule is the plan's rule of decision.
-func rule(p *plan.Plan) string {
+// decisionRule is the plan's rule of decision.
+func decisionRule(p *plan.Plan) string {
 	g := p.Decision.Guard
 	limits := "The limit is a share of the value applied plus a share of full scale, as the plan states them. "
 	if g == 0 {
@@ -58,14 +58,14 @@ func rule(p *plan.Plan) string {
 	}
 	return limits + fmt.Sprintf("Guarded acceptance with %s: pass where |error| ≤ limit − w, conditional pass up to the limit, conditional fail up to limit + w, fail beyond. "+
 		"A pass is then wrong with a probability of at most %.2g %%. The verdict is the worst outcome of all steps and of the gains that are limited.",
-		width, 100*beyond(g, p.Decision.Coverage))
+		width, 100*chanceOfWrongPass(g, p.Decision.Coverage))
 }
 
-// beyond is the probability that the true error is outside of a limit that the
+// chanceOfWrongPass is the probability that the true error is outside of a limit that the
 // measured one keeps clear of by g·U, normally distributed, one-sided
 // (ILAC-G8:09/2019, its table of guard bands): U is √2·erf⁻¹(coverage) standard
 // uncertainties.
-func beyond(g, coverage float64) float64 { return math.Erfc(g*math.Erfinv(coverage)) / 2 }
+func chanceOfWrongPass(g, coverage float64) float64 { return math.Erfc(g*math.Erfinv(coverage)) / 2 }
 
 // references are the publications that the result rests on.
 func references(e *calib.Evaluation) []string {

@@ -38,7 +38,7 @@ func gainTable(e *calib.Evaluation, gains *calib.Gains, caption, key string, nam
 	g.addFilled(
 		texts(key, "number", func(i int) string { return name(all[i]) }),
 		texts("deviation from 1 ± U", "number", func(i int) string { return typeset(gainDeviation(all[i].Estimate, k)) }),
-		texts("U from the readings alone", "number", func(i int) string { return spread(all[i].Estimate, k) }),
+		texts("U from the readings alone", "number", func(i int) string { return fromReadings(all[i].Estimate, k) }),
 	)
 	judged := false
 	for _, x := range all {
@@ -49,7 +49,7 @@ func gainTable(e *calib.Evaluation, gains *calib.Gains, caption, key string, nam
 			if math.IsNaN(all[i].Limit) {
 				return "none"
 			}
-			return quantity.Share(all[i].Limit, 3)
+			return quantity.Share(all[i].Limit, 2)
 		}), column{Head: "outcome", Symbol: func(i int) mark { return markOf(all[i].Outcome) }})
 	}
 	if p := float64(gains.PCommon); !math.IsNaN(p) {
@@ -101,7 +101,7 @@ func stepTable(e *calib.Evaluation) grid {
 			if math.IsNaN(float64(s.PhaseError)) {
 				return ""
 			}
-			return angle(float64(s.PhaseError), float64(s.UPhase))
+			return angleOf(float64(s.PhaseError), float64(s.UPhase))
 		}),
 		number("phase limit", func(s *calib.StepResult) string {
 			if math.IsNaN(float64(s.PhaseLimit)) {
@@ -111,10 +111,10 @@ func stepTable(e *calib.Evaluation) grid {
 		}),
 		column{Head: "outcome", Symbol: func(i int) mark { return markOf(all[i].Outcome) }},
 		number("n", func(s *calib.StepResult) string { return fmt.Sprint(s.Repeats) }),
-		texts("flags", "words", func(i int) string { return flags(&all[i]) }),
+		texts("flags", "words", func(i int) string { return stepFlags(&all[i]) }),
 	)
 	g.Notes = append(g.Notes, fmt.Sprintf("The generator shows its amplitudes as %s, for %s. The figures in parentheses are the standard uncertainties of the last digits; n is the number of readings.",
-		p.Generator.ShownAs, into(p.Generator.ShownFor)))
+		p.Generator.ShownAs, loadOf(p.Generator.ShownFor)))
 	if e.Result.Fit.Separable {
 		g.Notes = append(g.Notes, "The expected reading is for the wiring as the plan states it. The error is taken with the fitted series resistance added to it, which is the bench's; so it need not be the plain difference.")
 	} else {
@@ -126,14 +126,14 @@ func stepTable(e *calib.Evaluation) grid {
 	return g
 }
 
-func into(load string) string {
+func loadOf(load string) string {
 	if load == "matched load" {
 		return "a matched load"
 	}
 	return "an open circuit"
 }
 
-func flags(s *calib.StepResult) string {
+func stepFlags(s *calib.StepResult) string {
 	said := append([]string(nil), s.Flags...)
 	if s.Beyond {
 		said = append(said, "beyond full scale")
@@ -148,7 +148,7 @@ func pressingMost(all []calib.StepResult) []calib.StepResult {
 		if out[i].Outcome != out[j].Outcome {
 			return out[i].Outcome > out[j].Outcome
 		}
-		return share(&out[i]) > share(&out[j])
+		return shareOfLimit(&out[i]) > shareOfLimit(&out[j])
 	})
 	out = out[:mostSteps]
 	sort.SliceStable(out, func(i, j int) bool { return out[i].Index < out[j].Index })
@@ -161,22 +161,22 @@ func inputTable(e *calib.Evaluation) grid {
 	g := grid{Rows: len(all)}
 	g.addFilled(
 		texts("input", "words", func(i int) string { return all[i].Name }),
-		texts("stated (u)", "number", func(i int) string { return typeset(input(all[i].Value, all[i].U, all[i].Unit)) }),
-		texts("as fitted (u)", "number", func(i int) string { return typeset(input(all[i].Fitted, all[i].UFitted, all[i].Unit)) }),
+		texts("stated (u)", "number", func(i int) string { return typeset(inputValue(all[i].Value, all[i].U, all[i].Unit)) }),
+		texts("as fitted (u)", "number", func(i int) string { return typeset(inputValue(all[i].Fitted, all[i].UFitted, all[i].Unit)) }),
 		texts("moved by", "number", func(i int) string {
 			if all[i].U == 0 {
 				return ""
 			}
 			return typeset(hundredths((all[i].Fitted-all[i].Value)/all[i].U) + " u")
 		}),
-		texts("from", "words", func(i int) string { return all[i].Standard }),
+		texts("standard", "words", func(i int) string { return all[i].Standard }),
 	)
 	g.Notes = []string{"The figures in parentheses are standard uncertainties. An input that moves by more than about 2 u does not agree with the readings."}
 	return g
 }
 
-// input is an input's value with its standard uncertainty: a relative one in percent or ppm.
-func input(x, u float64, unit string) string {
+// inputValue is an input's value with its standard uncertainty: a relative one in percent or ppm.
+func inputValue(x, u float64, unit string) string {
 	switch {
 	case unit == "1" && math.Max(math.Abs(x), u) < 0.0005:
 		return quantity.Concise(x*1e6, u*1e6, "1") + " ppm"

@@ -66,5 +66,5 @@ func AtBest(o, bound Outcome) Outcome {
 	return max(o, bound)
 }
 
-// AtWorst is o, but no worse than bound.
+// AtWorst is o, but no worse than bound, which is one of the four.
 func AtWorst(o, bound Outcome) Outcome { return min(o, bound) }

@@ -43,7 +43,8 @@ func Gain(f, timeConstant float64, poles int) float64 {
 
 // Settling is the time, in s, after a step of the input at which a share of the
 // step is still missing from the output: the step response of n poles is the
-// distribution function of Gamma(n, 1) in t/T.
+// distribution function of Gamma(n, 1) in t/T. The share is above 0; of 1 or more
+// it is there at once.
 func Settling(timeConstant float64, poles int, remainder float64) float64 {
 	check(timeConstant, poles)
 	if remainder >= 1 {

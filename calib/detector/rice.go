@@ -21,7 +21,7 @@ func RiceMean(s, sigma float64) (mean, slope float64) {
 	}
 	a := s / sigma
 	x := a * a / 4
-	if x > 1e12 { // the terms below are σ²/2|s| beside |s|: under 1e-12
+	if x > 1e16 { // σ²/2|s| is beyond the last bit of |s|
 		return math.Abs(s), math.Copysign(1, s)
 	}
 	i0, i1 := scaledBessel(x)

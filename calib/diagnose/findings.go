@@ -27,6 +27,7 @@ const (
 	Flagged        = "flagged reading"
 	NoReading      = "no reading"
 	StandardLapsed = "standard past due"
+	BenchLimits    = "the bench limits"
 )
 
 // level is the probability below which chance is not taken for the cause.
@@ -37,7 +38,7 @@ const level = 0.01
 func Findings(e *calib.Evaluation) []calib.Finding {
 	var out []calib.Finding
 	for _, find := range []func(*calib.Evaluation) []calib.Finding{
-		beyondLimit, notSeparable, rangeGain, gain, offset, series, scatter, misfit, lists, lapsed,
+		beyondLimit, notSeparable, rangeGain, gain, offset, series, scatter, misfit, lists, lapsed, limited,
 	} {
 		out = append(out, find(e)...)
 	}

@@ -68,23 +68,47 @@ func (d *decoder) expected(t *table) *Quantity {
 func (d *decoder) decision(top *table) {
 	x := &d.plan.Decision
 	t := d.table(top.get("decision"))
-	x.Rule = d.choice(t.get("rule"), "guarded", "simple")
+	x.Rule = d.choice(t.get("rule"), "guarded", "simple", "risk")
 	n := t.get("guard")
 	x.Guard = d.number(n, 1, "a factor on U, 0 or more and without quotes", func(x float64) bool { return x >= 0 })
-	if x.Rule == "simple" {
+	if x.Rule != "guarded" {
 		x.Guard = 0
 		if n != nil {
-			d.fault(n, "the simple rule has no guard band; leave guard out or use rule = \"guarded\"")
+			d.fault(n, "the %s rule has no guard band; leave guard out or use rule = \"guarded\"", x.Rule)
 		}
 	}
-	x.Coverage = 0.95
-	if n := t.get("coverage"); n != nil {
-		v, ok := d.value(n, quantity.Ratio, anySign)
-		if ok && !(v.X > 0 && v.X < 1) {
-			d.fault(n, "%q, want a probability between 0 %% and 100 %%, like \"95 %%\"", n.text)
-		} else if ok {
-			x.Coverage = v.X
+	switch n := t.get("max_false_accept"); {
+	case x.Rule == "risk" && n == nil:
+		t.need("max_false_accept", `"2 %"`)
+	case x.Rule == "risk":
+		x.MaxFalseAccept = d.probability(n, 0.02, 0.5, "2 %")
+	case n != nil:
+		d.fault(n, "belongs to rule = \"risk\", and the rule is %q", x.Rule)
+	}
+	x.Coverage = d.probability(t.get("coverage"), 0.95, 1, "95 %")
+	if n := t.get("prior"); n != nil {
+		p := d.table(n)
+		x.Prior = &Prior{Reading: d.plain(p.get("reading"), quantity.Ratio, notNegative, 0), Range: d.plain(p.get("range"), quantity.Ratio, notNegative, 0)}
+		if x.Prior.Reading+x.Prior.Range == 0 {
+			d.fault(n, "states nothing; write it like { reading = \"0.3 %%\", range = \"0.1 %%\" }")
 		}
+		p.done()
 	}
 	t.done()
+}
+
+// probability reads a probability above 0 and below a bound.
+func (d *decoder) probability(n *node, missing, below float64, example string) float64 {
+	if n == nil {
+		return missing
+	}
+	v, ok := d.value(n, quantity.Ratio, anySign)
+	if !ok {
+		return missing
+	}
+	if !(v.X > 0 && v.X < below) {
+		d.fault(n, "%q, want a probability between 0 %% and %.0f %%, like %q", n.text, 100*below, example)
+		return missing
+	}
+	return v.X
 }

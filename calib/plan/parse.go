@@ -90,6 +90,9 @@ func syntaxFault(source []byte, err error, repeated *node) *fault.Fault {
 			f.Hints = append(f.Hints, "the line is: "+line)
 		}
 	}
+	if strings.Contains(f.What, "basic strings cannot have new lines") {
+		f.What = "the text has no closing quote"
+	}
 	if strings.Contains(f.What, "expected newline") || strings.Contains(f.What, "at start of value") || strings.Contains(f.What, "expected ',' or") {
 		f.Hints = append(f.Hints, `a text or a quantity stands in double quotes: frequency = "137 Hz"`)
 	}

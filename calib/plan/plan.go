@@ -219,7 +219,14 @@ type Fit struct {
 
 // Decision is the rule by which the verdict is found.
 type Decision struct {
-	Rule     string  // "guarded" or "simple"
-	Guard    float64 // factor on U; 0 for the simple rule
-	Coverage float64 // probability, 0.95 unless stated
+	Rule           string  // "guarded", "simple" or "risk"
+	Guard          float64 // factor on U; 0 for the other rules
+	MaxFalseAccept float64 // probability, for the rule "risk"
+	Coverage       float64 // probability, 0.95 unless stated
+	Prior          *Prior  // nil where not stated
 }
+
+// Prior is what is known of such detectors before one is measured: the standard
+// deviation of their errors, about zero, a share of the value applied plus a share
+// of full scale.
+type Prior struct{ Reading, Range float64 }

@@ -39,6 +39,14 @@ func ExampleFormat() {
 	// 1.000
 }
 
+func ExamplePlain() {
+	fmt.Println(quantity.Plain(1700, "Hz"))
+	fmt.Println(quantity.Plain(0.09999999999999999, "V"))
+	// Output:
+	// 1.7 kHz
+	// 100 mV
+}
+
 func ExampleConcise() {
 	fmt.Println(quantity.Concise(1.00021e6, 150, "Ω"))
 	fmt.Println(quantity.Concise(119.8e-9, 1.5e-9, "V"))

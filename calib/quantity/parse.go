@@ -8,7 +8,7 @@ import (
 	"strings"
 )
 
-// Value is a number in base units.
+// Value is a number in base units; of an amplitude, in the convention written.
 type Value struct {
 	X          float64
 	U          float64 // standard uncertainty written in parentheses

@@ -23,7 +23,8 @@ var exponentPlus = regexp.MustCompile(`(\d\.?[eE])\+`)
 
 // ParseSpread reads the uncertainty of a quantity of a kind: "0.1 %", "80 Ω",
 // "0.1 % + 10 mΩ". A bare number is a share only of a Ratio, where all is Relative;
-// the uncertainty of a temperature, being a difference, may be in K.
+// the uncertainty of a temperature, being a difference, may be in K. The convention of
+// a voltage is the caller's to compare with the value's.
 func ParseSpread(s string, k Kind) (Spread, error) {
 	if k == Temperature {
 		k = temperatureDifference

@@ -185,7 +185,7 @@ func (t *table) column(name string, at int, kind quantity.Kind, unit string) col
 	one, err := quantity.Parse("1 "+unit, kind)
 	switch {
 	case err != nil:
-		t.fault(at, "the unit of the column %s: %v", name, err)
+		t.fault(at, "%q is no unit for the column %s, %v; the column is written like %s [%s]", unit, name, kind, name, kind.Unit())
 	case name == colOutput && one.Convention != quantity.Unstated:
 		t.fault(at, "the output is a direct voltage, and %q says an alternating one", unit)
 	default:

@@ -18,6 +18,9 @@ func (s *streams) source(name string) (string, []byte, error) {
 		b, err := io.ReadAll(s.in)
 		return "standard input", b, err
 	}
+	if name == "" {
+		return name, nil, hinted{"the name of a file is empty", "is a variable of the shell not set?"}
+	}
 	b, err := os.ReadFile(name)
 	if err != nil {
 		err = fileError(name, err)

@@ -27,7 +27,10 @@ Exit status: 0 pass, 1 fail, 3 conditional or not judged, 2 a fault in the input
 or the usage.`,
 		Example: "  rungproof judge plan.toml bench.csv --out report",
 		Args:    exactly("PLAN", "READINGS"),
-		RunE: func(_ *cobra.Command, args []string) error {
+		RunE: func(c *cobra.Command, args []string) error {
+			if out == "" && c.Flags().Changed("out") {
+				return hinted{"--out names no folder", "is a variable of the shell not set?"}
+			}
 			e, err := s.evaluate(args[0], args[1])
 			if err != nil {
 				return err

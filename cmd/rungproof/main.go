@@ -50,7 +50,7 @@ func run(args []string, stdin io.Reader, stdout, stderr io.Writer) int {
 	root.SetOut(stdout)
 	root.SetErr(stderr)
 	root.SetArgs(args)
-	root.AddCommand(draftCommand(s), expectCommand(s), sheetCommand(s), judgeCommand(s))
+	root.AddCommand(draftCommand(s), expectCommand(s), sheetCommand(s), judgeCommand(s), budgetCommand(s))
 	if err := root.Execute(); err != nil {
 		fmt.Fprintln(stderr, message(err))
 		return exitFault
