@@ -1,8 +1,6 @@
 package calib
 
-// leastCapability is the ratio of limit to U below which the bench, rather than
-// the detector, limits a decision (common practice: 3 to 1).
-const leastCapability = 3
+import "rungproof/calib/decision"
 
 // Limiting says where the bench limits the decision, and what of it.
 type Limiting struct {
@@ -18,7 +16,7 @@ func (e *Evaluation) limiting(ids []string, limit, capability []float64) (*Limit
 	var l *Limiting
 	worst := 0
 	for i, c := range capability {
-		if !(c < leastCapability) {
+		if !(c < decision.LeastCapability) {
 			continue
 		}
 		if l == nil {

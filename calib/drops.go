@@ -220,12 +220,18 @@ func (d *drop) compute(f *forward, nu []float64, scratch []complex128) {
 // values, in V rms (so it is smooth, and negative, where a series resistance
 // below zero turns a small drop over), and the unit phasor that it is measured along.
 func (d *drop) size() (float64, complex128) {
-	size := cmplx.Abs(d.V)
+	return along(d.V, d.axis)
+}
+
+// along is a phasor's size along the direction that it is closest to of the two of
+// an axis, and the unit phasor that it is measured along.
+func along(v, axis complex128) (float64, complex128) {
+	size := cmplx.Abs(v)
 	if size == 0 {
-		return 0, d.axis
+		return 0, axis
 	}
-	u := d.V / complex(size, 0)
-	if real(u*cmplx.Conj(d.axis)) < 0 {
+	u := v / complex(size, 0)
+	if real(u*cmplx.Conj(axis)) < 0 {
 		return -size, -u
 	}
 	return size, u

@@ -215,5 +215,7 @@ type InputResult struct {
 	Unit     string  `json:"unit"`
 	Fitted   float64 `json:"fitted"`
 	UFitted  float64 `json:"u_fitted"`
+	Shape    string  `json:"distribution"`  // "normal" or "rectangular"
+	DOF      float64 `json:"dof,omitempty"` // degrees of freedom; infinite where left out
 	Standard string  `json:"standard,omitempty"`
 }

@@ -180,7 +180,7 @@ func (e *Evaluation) inputs() []InputResult {
 	out := make([]InputResult, 0, len(e.model.forward.inputs))
 	for i, in := range e.model.forward.inputs {
 		k := a.layout.inputs + i
-		r := InputResult{Name: in.Name, Value: in.Value, U: in.U, Unit: in.Unit,
+		r := InputResult{Name: in.Name, Value: in.Value, U: in.U, Unit: in.Unit, Shape: shapeOf(in.Shape).String(), DOF: in.DOF,
 			Fitted: a.result.P[k], UFitted: math.Sqrt(a.result.Cov.At(k, k))}
 		if in.Standard >= 0 {
 			r.Standard = e.Plan.Standards[in.Standard].Name

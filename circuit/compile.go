@@ -13,18 +13,20 @@ const (
 	compiledAccuracy = 1e-12 // relative, of H; what Solve itself keeps
 )
 
-// Compile gives H at f Hz as a function of up to 10 of the ladder's numbers, for any values of them of 0 or more. It is for work that needs H at very many values, such
-// as a Monte Carlo simulation: finding it takes 2^q solutions of the ladder.
+// Compile gives H at f Hz as a function of up to 10 of the ladder's numbers, for any values of them of 0 or more. It is for work that needs
+// H at very many of them, such as a Monte Carlo simulation. It takes 2^q solutions of the ladder, and the form pays up to about 5 variables.
 //
-// The form is exact. One impedance bears on a network's determinant and on each of its cofactors linearly, so every transfer is bilinear in it, (a + b·x)/(c + d·x)
-// (H. W. Bode, Network Analysis and Feedback Amplifier Design, 1945, chapter on the bilinear theorem, from memory), and several impedances together multi-affinely. The
-// coefficients are differences of N and D between the corners of the box that goes from 0 to some value of each variable. They keep their digits: the
-// network without, or opened at, a variable is passive like the whole, so D(x) = a·(Z + x) with Re Z ≥ 0, Z being the impedance that the variable
-// meets; its two terms never cancel, nor do theirs, and the digits of the higher corners are no loss at any x in the box. For x beyond it they are none
-// either once the box reaches Z.
+// The form is exact. One impedance bears on a network's determinant and on each of its cofactors linearly, so every transfer is bilinear in it,
+// (a + b·x)/(c + d·x), and in several together a quotient of multi-affine polynomials (H. W. Bode, Network Analysis and Feedback Amplifier
+// Design, 1945, on the bilinear theorem, from memory). So is it in 1 + jωC·Z, and thereby in C.
 //
-// Compile compares the form with [Ladder.Transfer] at a few places around the ladder's own values, and fails where a relative error is above 1e-12: where
-// two signals nearly cancel at the detector, or an undamped resonance is close.
+// The coefficients are differences of N and D between the corners of a box, each variable being 0 or far beyond all impedances that it meets.
+// That keeps their digits: at a corner the product of its variables outweighs all that is taken off. And the terms of D do not cancel. What is left
+// with a resistance shorted or taken out is passive like the whole, so D = d·(Z + x), Z what the resistance meets, Re Z ≥ 0; therefore
+// |Z| + x ≤ √2·|Z + x|, and so on for Z's own parts.
+//
+// Compile compares the form with [Ladder.Transfer] at a few places around the ladder's own values, and fails where it is off by more than 1e-12:
+// where two signals nearly cancel at the detector, or an undamped resonance is close.
 func (l *Ladder) Compile(f float64, variables []Variable) (*Compiled, error) {
 	if err := l.checkCompile(f, variables); err != nil {
 		return nil, err
@@ -85,27 +87,27 @@ func (l *Ladder) checkCompile(f float64, variables []Variable) error {
 	if len(variables) > maxVariables {
 		return fmt.Errorf("%d variables, want at most %d", len(variables), maxVariables)
 	}
-	for k, v := range variables {
+	var places []*float64
+	for _, v := range variables {
 		switch {
 		case v.Element < 0 || v.Element >= elements:
-			return fmt.Errorf("variable %d, %v: no such element in a ladder", k+1, v)
+			return fmt.Errorf("%v to vary: a ladder has no such element", v)
 		case v.Element.ofArm() && (v.Arm < 0 || v.Arm >= len(l.Arms)):
-			return fmt.Errorf("variable %d, %v: want an arm of 1 to %d", k+1, v, len(l.Arms))
+			return fmt.Errorf("%v to vary: want an arm of 1 to %d", v, len(l.Arms))
 		case v.Element.ofArm() && l.Arms[v.Arm].Place == Tap:
-			return fmt.Errorf("variable %d, %v: that arm is a tap and has no element", k+1, v)
-		case !v.Element.ofArm() && v.Arm != 0:
-			return fmt.Errorf("variable %d, %v: belongs to no arm, want Arm 0, found %d", k+1, v, v.Arm)
-		case slices.Contains(variables[:k], v):
-			return fmt.Errorf("variable %d, %v: is named twice", k+1, v)
+			return fmt.Errorf("%v to vary: that arm is a tap and has no element", v)
+		case slices.Contains(places, v.In(l)):
+			return fmt.Errorf("%v to vary: named twice", v)
 		case math.IsInf(*v.In(l), 1):
-			return fmt.Errorf("variable %d, %v: the input is open, want a finite value", k+1, v)
+			return fmt.Errorf("%v to vary: the input is open, want a finite value", v)
 		}
+		places = append(places, v.In(l))
 	}
 	return nil
 }
 
-// reach is the far end of the box for a variable of some nominal value: at least twice that, and at least what has the impedance of the
-// whole ladder. Too far does no harm. A power of two, so that scaling rounds nothing.
+// reach is the far end of the box for a variable of some nominal value in a ladder of some input impedance: a million times the greater. A power
+// of two, so that scaling rounds nothing.
 func (v Variable) reach(nominal, impedance, omega float64) float64 {
 	switch v.Element {
 	case ArmL:
@@ -116,8 +118,8 @@ func (v Variable) reach(nominal, impedance, omega float64) float64 {
 	if math.IsInf(impedance, 1) { // at DC: of no effect
 		impedance = 1
 	}
-	_, exponent := math.Frexp(max(2*nominal, impedance))
-	return math.Ldexp(1, exponent)
+	_, exponent := math.Frexp(max(nominal, impedance))
+	return math.Ldexp(1, exponent+20)
 }
 
 // fraction solves the ladder and gives H as N/D, both over 2^exponent.
@@ -168,7 +170,8 @@ func quotientOf(n, d complex128, exponent int) quotient {
 	return quotient{real(n), imag(n), real(d), imag(d)}
 }
 
-// compare holds the compiled form against the ladder where each variable has its nominal value, half or twice that; 0 is compared with places in the box.
+// compare holds the form against the ladder where each variable has its nominal value, half or twice that. Where that is 0, it takes 0 and two
+// values that may be felt.
 func (c *Compiled) compare(l *Ladder, f float64, variables []Variable, box []float64) error {
 	work := *l
 	work.Arms = slices.Clone(l.Arms)
@@ -179,15 +182,15 @@ func (c *Compiled) compare(l *Ladder, f float64, variables []Variable, box []flo
 			nominal := *v.In(l)
 			factors, unit := [3]float64{1, 0.5, 2}, nominal
 			if nominal == 0 {
-				factors, unit = [3]float64{0, 1e-3, 1}, box[k]
+				factors, unit = [3]float64{0, 1e-9, 1e-6}, box[k]
 			}
 			x[k] = unit * factors[pattern(trial, k)]
 			*v.In(&work) = x[k]
 		}
 		want, got := work.Transfer(f, &ws), c.Transfer(x)
 		if off := cmplx.Abs(got - want); !(off <= compiledAccuracy*cmplx.Abs(want)) {
-			return fmt.Errorf("the transfer as a function of %v is off by a share of %.2g, want at most %g: signals cancel at the detector, or a resonance is close; vary fewer of these",
-				variables, off/cmplx.Abs(want), compiledAccuracy)
+			return fmt.Errorf("the transfer as a function of %v would be off by a share of %.2g, want at most %g: signals cancel at the detector, "+
+				"or an undamped resonance is close to %g Hz", variables, off/cmplx.Abs(want), compiledAccuracy, f)
 		}
 	}
 	return nil

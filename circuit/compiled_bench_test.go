@@ -60,7 +60,7 @@ func BenchmarkCompile8(b *testing.B) {
 }
 
 // compiledOf compiles a sample in so many of its numbers and gives their values.
-func compiledOf(b *testing.B, variables int) (*Compiled, []float64) {
+func compiledOf(b testing.TB, variables int) (*Compiled, []float64) {
 	l := &samples()[4].ladder
 	all := allVariables(l)[:variables]
 	c, err := l.Compile(1e3, all)

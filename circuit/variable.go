@@ -32,7 +32,7 @@ func (e Element) ofArm() bool { return e <= ArmLead }
 // Variable is one number of a ladder that will vary.
 type Variable struct {
 	Element Element
-	Arm     int // index of its arm; 0 for what belongs to none
+	Arm     int // index of its arm; of no meaning for what belongs to none
 }
 
 // String counts arms from 1.

@@ -20,7 +20,7 @@ import (
 type Figure struct {
 	Name    string // of the file: "readings.png"
 	Title   string // stands in the picture too
-	Caption string // what to see in it and how to read it, one to three sentences
+	Caption string // what to see in it and how to read it, a few sentences
 	PNG     []byte // 200 dots per inch, the same bytes for the same evaluation
 }
 
@@ -29,7 +29,7 @@ const figureDPI = 200
 
 // Figures draws an evaluation. A figure that would have nothing to show is left out.
 func Figures(e *calib.Evaluation) ([]Figure, error) {
-	return drawFigures(figureSheets(e), plot.DefaultTextHandler)
+	return drawFigures(figureSheets(e), plot.DefaultTextHandler, figureDPI)
 }
 
 // figureSheets lays the figures out, undrawn.
@@ -46,13 +46,13 @@ func figureSheets(e *calib.Evaluation) []*figureSheet {
 }
 
 // drawFigures draws them at the same time, each on a canvas of its own.
-func drawFigures(sheets []*figureSheet, handler text.Handler) ([]Figure, error) {
+func drawFigures(sheets []*figureSheet, handler text.Handler, dpi int) ([]Figure, error) {
 	figures, failed := make([]Figure, len(sheets)), make([]error, len(sheets))
 	var group sync.WaitGroup
 	for i, s := range sheets {
 		group.Go(func() {
 			figures[i] = Figure{Name: s.name, Title: s.title, Caption: s.caption}
-			figures[i].PNG, failed[i] = s.png(handler)
+			figures[i].PNG, failed[i] = s.png(handler, dpi)
 		})
 	}
 	group.Wait()
@@ -65,8 +65,8 @@ func drawFigures(sheets []*figureSheet, handler text.Handler) ([]Figure, error) 
 }
 
 // png draws a sheet into memory.
-func (s *figureSheet) png(handler text.Handler) ([]byte, error) {
-	canvas := vgimg.NewWith(vgimg.UseWH(figureWidth, s.height), vgimg.UseDPI(figureDPI))
+func (s *figureSheet) png(handler text.Handler, dpi int) ([]byte, error) {
+	canvas := vgimg.NewWith(vgimg.UseWH(figureWidth, s.height), vgimg.UseDPI(dpi))
 	s.draw(draw.New(canvas), handler)
 	var out bytes.Buffer
 	encoder := png.Encoder{CompressionLevel: png.DefaultCompression}

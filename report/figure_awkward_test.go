@@ -72,7 +72,7 @@ func TestFiguresOfAwkwardPlans(t *testing.T) {
 			"readings errors unexplained joint frequency", ""},
 	} {
 		t.Run(c.name, func(t *testing.T) {
-			figures := figuresOf(t, figureEvaluation(t, c.plan, c.rows))
+			figures := coarseFigures(t, figureEvaluation(t, c.plan, c.rows))
 			if got := figureNames(figures); got != c.figures {
 				t.Errorf("figures %s, want %s", got, c.figures)
 			}
@@ -130,7 +130,7 @@ func TestFiguresOfSpoiltResults(t *testing.T) {
 			}
 			e := figureCase(t, c)
 			spoil(e.Result)
-			for _, f := range figuresOf(t, e) {
+			for _, f := range coarseFigures(t, e) {
 				if len(f.PNG) == 0 || strings.Contains(f.Caption, "NaN") {
 					t.Errorf("%s has %d bytes and says %q", f.Name, len(f.PNG), f.Caption)
 				}

@@ -44,7 +44,7 @@ type figureTicks int
 
 // Ticks are the labelled marks and four or five small ones between two of them.
 func (n figureTicks) Ticks(low, high float64) []plot.Tick {
-	if !(high > low) || math.IsInf(high-low, 0) {
+	if !(high-low > 1e-12*math.Max(math.Abs(low), math.Abs(high))) || math.IsInf(high-low, 0) {
 		return nil
 	}
 	rough := (high - low) / float64(n)

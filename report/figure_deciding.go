@@ -122,13 +122,17 @@ func (f figureDeciding) lines(intercepts []float64) []figureStraight {
 //
 //	u²(V) = u²(o) + I²·u²(r) + 2·I·ρ·u(o)·u(r)
 //
-// the gain, which is within percents of 1, taken as 1 in the band's width.
-func (f figureDeciding) band(left, right float64, at func(x, y float64) figureXY) []figureXY {
+// with u(o) taken over the gain, as the intercept is.
+func (f figureDeciding) band(intercept, left, right float64, at func(x, y float64) figureXY) []figureXY {
 	if !f.offset.Known || f.perRange {
 		return nil
 	}
+	share := 1.0
+	if f.offset.Value != 0 {
+		share = intercept / f.offset.Value
+	}
 	half := func(x float64) float64 {
-		uo, ur := f.offset.U, f.series.U*x
+		uo, ur := share*f.offset.U, f.series.U*x
 		if !f.separable {
 			ur = 0
 		}
@@ -138,7 +142,7 @@ func (f figureDeciding) band(left, right float64, at func(x, y float64) figureXY
 	upper, lower := make([]figureXY, 0, 2*n+2), make([]figureXY, 0, n+1)
 	for i := range n + 1 {
 		x := left + (right-left)*float64(i)/n
-		y := f.offset.Value + f.slope(x)
+		y := intercept + f.slope(x)
 		upper, lower = append(upper, at(x, y+half(x))), append(lower, at(x, y-half(x)))
 	}
 	for i := range lower {
@@ -185,7 +189,7 @@ func (f figureDeciding) caption(points []figureLeft) string {
 	case !f.separable && figureNoCurrent(points):
 		return c + " The line is the offset; no current flows that would show a series resistance."
 	case !f.separable:
-		return c + " The level line takes all of it for an offset, the broken one for a series resistance; a point at another current would tell which."
+		return c + " The level line takes all of it for an offset, the dashed one for a series resistance; a point at another current would tell which."
 	case f.perRange:
 		return c + " The offset is a share of range, so that each range has a line of its own; the slope of all is the series resistance."
 	case lines > 1:

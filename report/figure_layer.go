@@ -3,9 +3,7 @@ package report
 import (
 	"image/color"
 
-	xfont "golang.org/x/image/font"
 	"gonum.org/v1/plot"
-	"gonum.org/v1/plot/text"
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
 )
@@ -75,13 +73,6 @@ func (a *figureArea) mark(s draw.GlyphStyle, x, y float64) {
 		a.DrawGlyph(edge, p)
 	}
 	a.DrawGlyph(s, p)
-}
-
-// words writes at a place, shifted by points.
-func (a *figureArea) words(x, y float64, dx, dy vg.Length, align text.XAlignment, words string) {
-	s := figureText(figureTickSize, xfont.WeightNormal, a.plot.X.Tick.Label.Handler)
-	s.XAlign, s.YAlign = align, text.YCenter
-	a.FillText(s, a.at(x, y).Add(vg.Point{X: dx, Y: dy}), words)
 }
 
 // figureBack is the grid of a panel, its lowest layer.

@@ -45,7 +45,7 @@ func TestFiguresWriteOnlyWhatTheirFontsHave(t *testing.T) {
 	perRange := figureSource(t, "arrival", "[decision]", "[fit]\noffset = \"share of range\"\n[decision]")
 	evaluations = append(evaluations, figureEvaluation(t, perRange, figureRead(t, "arrival")), figureMany(t, 12))
 	for _, e := range evaluations {
-		if _, err := drawFigures(figureSheets(e), listener); err != nil {
+		if _, err := drawFigures(figureSheets(e), listener, figureCoarse); err != nil {
 			t.Fatal(err)
 		}
 	}

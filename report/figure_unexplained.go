@@ -224,7 +224,7 @@ func figureLeftPanel(v figureView, line figureDeciding, title string) *figurePan
 	at := func(x, y float64) figureXY { return figureXY{x / scaleX, y / scaleY} }
 	panel.layers(func(a *figureArea) {
 		if len(v.intercepts) == 1 {
-			a.fill(figureShade, line.band(v.left, v.right, at)...)
+			a.fill(figureShade, line.band(v.intercepts[0], v.left, v.right, at)...)
 		}
 		a.across(figureZero, 0)
 		a.up(figureZero, 0)

@@ -162,6 +162,7 @@ func inputTable(e *calib.Evaluation) grid {
 	g.addFilled(
 		texts("input", "words", func(i int) string { return all[i].Name }),
 		texts("stated (u)", "number", func(i int) string { return typeset(inputValue(all[i].Value, all[i].U, all[i].Unit)) }),
+		texts("distribution", "words", func(i int) string { return all[i].Shape }),
 		texts("as fitted (u)", "number", func(i int) string { return typeset(inputValue(all[i].Fitted, all[i].UFitted, all[i].Unit)) }),
 		texts("moved by", "number", func(i int) string {
 			if all[i].U == 0 {

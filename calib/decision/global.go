@@ -34,12 +34,9 @@ type GlobalRisk struct {
 }
 
 // Global is the risk of accepting by a measured error of standard uncertainty u ≥ 0,
-// where its true value has the prior: JCGM 106:2012, clause 9.5, to 1e-12 or better.
+// where its true value has the prior: JCGM 106:2012, clause 9, to 1e-12 or better.
 // An acceptance interval whose limits have crossed, or are NaN, accepts nothing.
 func Global(prior Prior, u float64, tolerance, acceptance Interval) GlobalRisk {
-	if !(prior.SD > 0) {
-		panic(fmt.Sprintf("decision: a prior with a standard deviation of %g; want one above 0", prior.SD))
-	}
 	k := learn(prior, u, tolerance)
 	r := GlobalRisk{Conforming: Conformity(prior.Mean, prior.SD, tolerance.Lower, tolerance.Upper)}
 	rejected := 1.0
@@ -64,13 +61,14 @@ func GuardFor(prior Prior, u float64, tolerance Interval, risk float64) float64 
 	if !(0 < risk && risk < 1) {
 		panic(fmt.Sprintf("decision: a consumer's risk of %g; want one above 0 and below 1", risk))
 	}
+	k := learn(prior, u, tolerance)
 	if nonconformity(prior.Mean, prior.SD, tolerance.Lower, tolerance.Upper) <= risk {
 		return math.Inf(-1)
 	}
-	far := reach * math.Hypot(prior.SD, u)
+	far := reach * k.reading.Sigma
 	room := min(tolerance.Upper-prior.Mean, prior.Mean-tolerance.Lower)
 	nothing := min((tolerance.Upper-tolerance.Lower)/2, room+far)
 	return boundary(nothing, room-far, func(w float64) bool {
-		return Global(prior, u, tolerance, Interval{tolerance.Lower + w, tolerance.Upper - w}).Consumer <= risk
+		return k.average(nonconformity, tolerance.Lower+w, tolerance.Upper-w) <= risk
 	})
 }

@@ -1,6 +1,7 @@
 package decision
 
 import (
+	"fmt"
 	"math"
 	"slices"
 
@@ -29,6 +30,9 @@ const (
 )
 
 func learn(prior Prior, u float64, tolerance Interval) knowledge {
+	if !(prior.SD > 0) {
+		panic(fmt.Sprintf("decision: a prior with a standard deviation of %g; want one above 0", prior.SD))
+	}
 	sd := math.Hypot(prior.SD, u)
 	share := prior.SD / sd
 	k := knowledge{reading: distuv.Normal{Mu: prior.Mean, Sigma: sd}, gain: share * share, u: share * u, tolerance: tolerance}
@@ -45,7 +49,8 @@ func learn(prior Prior, u float64, tolerance Interval) knowledge {
 	return k
 }
 
-// average is the integral of a specific risk, weighted with the density of the readings, from lower to upper.
+// average is the integral of a specific risk, weighted with the density of the readings, from lower to upper;
+// 0 where these have crossed.
 func (k knowledge) average(risk func(e, u, lower, upper float64) float64, lower, upper float64) float64 {
 	mean, sd := k.reading.Mu, k.reading.Sigma
 	weighted := func(y float64) float64 {

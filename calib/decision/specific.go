@@ -1,6 +1,6 @@
 package decision
 
-// Accepting is the specific consumer's risk of JCGM 106:2012, clause 9.3: the
+// Accepting is the specific consumer's risk of JCGM 106:2012, clause 9: the
 // probability 1 − p_c that a detector accepted on this very error, e with standard
 // uncertainty u, is beyond the symmetric limit.
 func Accepting(e, u, limit float64) float64 { return nonconformity(e, u, -limit, limit) }

@@ -26,17 +26,36 @@ func ConvolutionFactor(lines []Line, coverage float64) float64 {
 	}
 	// The nodes of the integral serve every x up to the one they are made for.
 	high := min(2, s.reach)
-	nodes := s.nodes(high)
+	nodes := s.nodes(high, coverage)
 	for high < s.reach && nodes.probability(high) < coverage {
 		high = min(2*high, s.reach)
-		nodes = s.nodes(high)
+		nodes = s.nodes(high, coverage)
 	}
-	low := 0.0
-	for high-low > 1e-9*high {
-		if middle := (low + high) / 2; nodes.probability(middle) < coverage {
-			low = middle
-		} else {
-			high = middle
+	return root(func(x float64) float64 { return nodes.probability(x) - coverage }, high, 1e-9*(1-coverage))
+}
+
+// root of an f that rises from below zero at 0 to zero or above at high: false
+// position, in which an end that stays put counts half (Dowell and Jarratt, BIT 11 (1971) 168).
+func root(f func(float64) float64, high, tolerance float64) float64 {
+	low, fLow, fHigh := 0.0, f(0), f(high)
+	side := 0
+	for range 100 {
+		x := (low*fHigh - high*fLow) / (fHigh - fLow)
+		switch y := f(x); {
+		case math.Abs(y) <= tolerance || high-low <= 1e-12*high:
+			return x
+		case y < 0:
+			low, fLow = x, y
+			if side < 0 {
+				fHigh /= 2
+			}
+			side = -1
+		default:
+			high, fHigh = x, y
+			if side > 0 {
+				fLow /= 2
+			}
+			side = 1
 		}
 	}
 	return (low + high) / 2
@@ -45,9 +64,9 @@ func ConvolutionFactor(lines []Line, coverage float64) float64 {
 // nodes are the places t of a quadrature, with 2/π·φ(t)/t times the weight there.
 type nodes struct{ t, weight []float64 }
 
-// nodes for values up to x. Panels of one oscillation at most are integrated by
+// nodes for values up to x of about the given coverage. Panels of one oscillation at most are integrated by
 // Gauss and Legendre; towards zero, where φ of a scaled t is not smooth, they halve.
-func (s *sum) nodes(x float64) nodes {
+func (s *sum) nodes(x, coverage float64) nodes {
 	const order, halvings = 16, 24
 	var place, weight [order]float64
 	quad.Legendre{}.FixedLocations(place[:], weight[:], 0, 1)
@@ -66,10 +85,12 @@ func (s *sum) nodes(x float64) nodes {
 	for from := first; from < length/1.5; from *= 2 {
 		panel(from, from)
 	}
-	// Beyond 1e5 what oscillates is left out: it has cancelled to 1e-9 unless
-	// arcsines alone hold the sum.
+	// The rest of the integral is at most the bound, and less by t times the
+	// distance from x to the next edge of the density, where it oscillates.
+	// Arcsines alone go on too slowly: at 1e5 they are left.
 	for from := length; from < 1e5; from += length {
-		if _, bound := s.characteristic(from); bound < 1e-11 {
+		_, bound := s.characteristic(from)
+		if bound < 1e-7*(1-coverage) || bound/from < 2e-8*(1-coverage) {
 			break
 		}
 		panel(from, length)

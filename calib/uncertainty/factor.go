@@ -35,10 +35,10 @@ func degrees(dof float64) float64 {
 	switch {
 	case dof == 0:
 		return math.Inf(1)
-	case dof >= 0.5: // an uncertainty of 100 % of u itself (GUM G.4.2, equation G.3)
+	case dof >= 1:
 		return dof
 	}
-	panic("uncertainty: degrees of freedom are 1/2 or more, or 0 for infinitely many")
+	panic("uncertainty: degrees of freedom are 1 or more, or 0 for infinitely many")
 }
 
 func checkCoverage(p float64) {

@@ -40,7 +40,7 @@ the detector shows it ("100 µV"), or the error at a step ("A12").`,
 			return err
 		},
 	}
-	c.Flags().StringVar(&of, "of", calib.OfGain, "the `RESULT`: gain, offset, series-resistance, a range or a step")
+	c.Flags().StringVar(&of, "of", calib.OfGain, "the `RESULT` to take apart")
 	c.Flags().BoolVar(&asJSON, "json", false, "write JSON instead of a table")
 	return c
 }
