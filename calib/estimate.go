@@ -1,6 +1,7 @@
 package calib
 
 import (
+	"fmt"
 	"math"
 	"math/cmplx"
 
@@ -9,6 +10,7 @@ import (
 
 	"rungproof/calib/fit"
 	"rungproof/calib/plan"
+	"rungproof/calib/quantity"
 	"rungproof/calib/uncertainty"
 )
 
@@ -31,6 +33,10 @@ const (
 // inseparable is the largest growth of the offset's standard uncertainty, by
 // leaving the series resistance free, at which the two count as told apart.
 const inseparable = 20
+
+// nearlySettled is the next step of a fit, in standard uncertainties, that is small
+// enough: a gross outlier bends χ² so that the steps shrink but slowly.
+const nearlySettled = 0.01
 
 // estimate is one fit of the model to the readings.
 type estimate struct {
@@ -127,8 +133,8 @@ func (m *model) estimate(gain string, h held) (*estimate, error) {
 	// Two parameters that look alike can keep the fit from settling; its
 	// covariance says so all the same, and the caller then holds one of them.
 	var err error
-	if e.result, err = fit.Solve(problem); err != nil && (e.result == nil || e.separable()) {
-		return nil, err
+	if e.result, err = fit.Solve(problem); err != nil && (e.result == nil || (e.result.Step > nearlySettled && e.separable())) {
+		return nil, m.unsettled(err)
 	}
 	e.v = w.at(e.result.P, m.forward.stated())
 	return e, nil
@@ -202,6 +208,30 @@ func (e *estimate) separable() bool {
 		}
 	}
 	return true
+}
+
+// seesSignal tells whether the detector responds to the ladder at all: some gain
+// is five times its standard uncertainty. Where none is, a series resistance has
+// no effect on the readings, and nothing can be said of it.
+func (e *estimate) seesSignal() bool {
+	for k := range e.layout.gains {
+		if g := e.result.P[k]; !e.result.Determined(k) || math.Abs(g) > 5*math.Sqrt(e.result.Cov.At(k, k)) {
+			return true
+		}
+	}
+	return false
+}
+
+// unsettled is the error of a fit that does not settle, with the reading that is
+// most likely why: the one farthest from the others' ratio of reading to drop.
+func (m *model) unsettled(err error) error {
+	odd := m.oddReadings(oddFactor)
+	if len(odd) == 0 {
+		return err
+	}
+	o := odd[0]
+	return fmt.Errorf("%w\nstep %s reads %s where the other steps let expect %s: is its unit, its range or its setting right?",
+		err, o.Step, quantity.Format(o.Reading, 3, "V"), quantity.Format(o.Likely, 3, "V"))
 }
 
 // commonGain is the probability that chance alone lowers χ² as much as it falls

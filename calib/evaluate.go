@@ -18,6 +18,9 @@ import (
 	"rungproof/calib/reading"
 )
 
+// oddFactor is how many times too large or too small a reading is odd.
+const oddFactor = 3
+
 // oneGainLevel is the probability below which one common gain is held to be wrong.
 const oneGainLevel = 0.01
 
@@ -49,6 +52,7 @@ func Evaluate(p *plan.Plan, set *reading.Set) (*Evaluation, error) {
 	if r.Limiting, err = e.limited(); err != nil {
 		return nil, err
 	}
+	r.Odd = m.oddReadings(oddFactor)
 	r.Repeatability = m.repeats
 	r.Inputs = e.inputs()
 	r.PlanSHA256, r.ReadingsSHA256 = digest(p.Source), digest(set.Source)
@@ -81,7 +85,8 @@ func (e *Evaluation) estimate() error {
 	}
 	e.asked = free
 	hold := nothing
-	if r.Fit.Separable = free.separable(); !r.Fit.Separable {
+	r.NoSignal = !free.seesSignal()
+	if r.Fit.Separable = free.separable() && !r.NoSignal; !r.Fit.Separable {
 		hold = seriesHeld
 		if e.asked, err = m.estimate(asks, seriesHeld); err != nil {
 			return err
@@ -109,22 +114,23 @@ func (e *Evaluation) estimate() error {
 	if r.ByFreq != nil {
 		r.ByFreq.Used = decides == gainPerFrequency
 	}
-	if !e.deciding.separable() {
+	if !r.NoSignal && !e.deciding.separable() {
 		if e.deciding, err = m.estimate(decides, seriesHeld); err != nil {
 			return err
 		}
 		hold = seriesHeld
 	}
-	if hold != nothing {
+	if hold != nothing && !r.NoSignal {
 		if e.alternate, err = m.estimate(decides, offsetHeld); err != nil {
 			return err
 		}
 	}
-	return e.fitResult(free, hold)
+	e.fitResult()
+	return nil
 }
 
 // fitResult fills the part of the result that speaks of the fit asked for.
-func (e *Evaluation) fitResult(free *estimate, hold held) error {
+func (e *Evaluation) fitResult() {
 	m, f, a, unit := e.model, &e.Result.Fit, e.asked, offsetUnit(e.Plan)
 	w := a.layout
 	f.Gain = Estimate{Unit: "1"}
@@ -144,12 +150,10 @@ func (e *Evaluation) fitResult(free *estimate, hold held) error {
 			f.Correlation["gain,offset"] = number(a.correlation(0, w.offset))
 			f.Correlation["gain,series_resistance"] = number(a.correlation(0, w.series))
 		}
-	} else {
-		alternate, err := m.estimate(e.Plan.Fit.Gain, offsetHeld)
-		if err != nil {
-			return err
-		}
-		intercept, series := m.value(a, w.offset, unit), m.value(alternate, alternate.layout.series, "ohm")
+	}
+	if e.alternate != nil {
+		intercept := m.value(e.deciding, e.deciding.layout.offset, unit)
+		series := m.value(e.alternate, e.alternate.layout.series, "ohm")
 		f.Intercept, f.AsSeries = &intercept, &series
 	}
 	for i, k := range w.phase {
@@ -161,7 +165,6 @@ func (e *Evaluation) fitResult(free *estimate, hold held) error {
 	if f.DOF > 0 {
 		f.P = number(distuv.ChiSquared{K: float64(f.DOF)}.Survival(a.result.ChiSquared))
 	}
-	return nil
 }
 
 // gains compares the fit with several gains to the one with a common gain.

@@ -20,9 +20,12 @@ type MonteCarloOptions struct {
 	Progress func(done, total int)
 }
 
-// block is the number of trials that one seed serves: so the result does not
-// depend on how many cores share the work (and JCGM 101, 7.9.4, wants 10⁴ at least).
+// block is the number of trials that one seed serves, so that the result does not
+// depend on how many cores share the work: what JCGM 101, 7.9.4 b, wants at 95 % and 99 %.
 const block = 10000
+
+// digits are the significant digits that uncertainties are to be good to.
+const digits = 2
 
 // MostTrials bounds the memory: the values of all outputs are kept, 8 bytes each,
 // and the quantiles are exact.
@@ -45,14 +48,14 @@ type MonteCarlo struct {
 
 // MonteCarloOutput is one result by Monte Carlo beside the linear one.
 type MonteCarloOutput struct {
-	Name      string                  `json:"name"`
-	Unit      string                  `json:"unit"`
-	Linear    Estimate                `json:"linear"`
-	Mean      float64                 `json:"mean"`
-	U         float64                 `json:"u"`
-	Symmetric uncertainty.Interval    `json:"symmetric"` // probabilistically symmetric
-	Shortest  uncertainty.Interval    `json:"shortest"`
-	Check     uncertainty.Validation  `json:"validation"` // of the linear interval, JCGM 101, clause 8
+	Name      string                 `json:"name"`
+	Unit      string                 `json:"unit"`
+	Linear    Estimate               `json:"linear"`
+	Mean      float64                `json:"mean"`
+	U         float64                `json:"u"`
+	Symmetric uncertainty.Interval   `json:"symmetric"` // probabilistically symmetric
+	Shortest  uncertainty.Interval   `json:"shortest"`
+	Check     uncertainty.Validation `json:"validation"` // of the linear interval, JCGM 101, clause 8
 }
 
 // outputs are the parameters that Monte Carlo confirms.
@@ -107,9 +110,9 @@ func (e *Evaluation) MonteCarlo(ctx context.Context, o MonteCarloOptions) (*Mont
 	for i, v := range values {
 		out := MonteCarloOutput{Name: names[i], Unit: units[i], Linear: e.model.value(e.deciding, params[i], units[i])}
 		s := uncertainty.Summarise(v, e.Plan.Decision.Coverage)
-		out.Mean, out.U, out.Symmetric, out.Shortest = s.Mean, s.U, s.Symmetric, s.Shortest
-		out.Check = uncertainty.Validate(out.Linear.Value, out.Linear.U, out.Linear.Expanded(), s)
-		mc.Validated = mc.Validated && out.Check.Valid
+		out.Mean, out.U, out.Symmetric, out.Shortest = s.Mean, s.SD, s.Symmetric, s.Shortest
+		out.Check = uncertainty.Validate(out.Linear.Value, out.Linear.Expanded(), s.Symmetric, uncertainty.Tolerance(out.Linear.U, digits))
+		mc.Validated = mc.Validated && out.Check.Validated
 		mc.Outputs = append(mc.Outputs, out)
 	}
 	return mc, nil
@@ -166,8 +169,8 @@ func (r *monteCarlo) all(ctx context.Context, blocks int, mc *MonteCarlo) [][]fl
 
 	values := make([][]float64, len(r.params))
 	waiting := map[int]blockResult{}
-	adaptive := uncertainty.NewAdaptive(len(r.params), r.e.Plan.Decision.Coverage)
-	done, finished := 0, false
+	adaptive := uncertainty.NewAdaptive(len(r.params), r.e.Plan.Decision.Coverage, digits)
+	done, finished, total := 0, false, blocks*block
 	for result := range results {
 		waiting[result.index] = result
 		for {
@@ -185,12 +188,15 @@ func (r *monteCarlo) all(ctx context.Context, blocks int, mc *MonteCarlo) [][]fl
 			for i, v := range b.values {
 				values[i] = append(values[i], v...)
 			}
-			if mc.Adaptive && adaptive.Add(b.values) {
-				finished = true
-				stop()
+			if mc.Adaptive {
+				adaptive.Add(b.values)
+				if finished = adaptive.Done(); finished {
+					stop()
+				}
+				total = min(total, max(adaptive.Needed(), adaptive.Blocks())*block)
 			}
 			if r.o.Progress != nil {
-				r.o.Progress(len(values[0]), blocks*block)
+				r.o.Progress(len(values[0]), total)
 			}
 		}
 	}

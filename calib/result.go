@@ -64,6 +64,8 @@ type Result struct {
 	CoverageFactor float64       `json:"coverage_factor"` // U = k·u
 	Repeatability  Repeatability `json:"repeatability"`
 	Condition      *Interval     `json:"series_resistance_for_pass,omitempty"` // not separable: where all steps pass, Ω
+	NoSignal       bool          `json:"no_signal,omitempty"`                  // the detector does not respond to the ladder
+	Odd            []OddReading  `json:"odd_readings,omitempty"`
 	Limiting       *Limiting     `json:"limited_by_the_bench,omitempty"`
 	Inputs         []InputResult `json:"inputs"`
 	Software       string        `json:"software,omitempty"`
@@ -71,10 +73,18 @@ type Result struct {
 	ReadingsSHA256 string        `json:"readings_sha256,omitempty"`
 }
 
+// Separable tells whether the fit that errors and verdict rest on parts the offset
+// from the series resistance.
+func (r *Result) Separable() bool { return !r.NoSignal && r.Fit.Intercept == nil }
+
 // Deciding are the offset and the series resistance that errors and verdict rest
 // on: those of the fit by range where one common gain is wrong, since the common
-// fit then charges the faulty range's error to them.
+// fit then charges the faulty range's error to them. Neither is known where that
+// fit cannot part them.
 func (r *Result) Deciding() (offset, series Estimate) {
+	if !r.Separable() {
+		return Estimate{Unit: r.Fit.Offset.Unit}, Estimate{Unit: "ohm"}
+	}
 	if r.ByRange.Used {
 		return r.ByRange.Offset, r.ByRange.SeriesResistance
 	}

@@ -106,7 +106,7 @@ func (l *Ladder) checkCompile(f float64, variables []Variable) error {
 	return nil
 }
 
-// reach is the far end of the box for a variable of some nominal value in a ladder of some input impedance: a million times the greater. A power
+// reach is the far end of the box for a variable of some nominal value in a ladder of some input impedance: 10¹² times the greater. A power
 // of two, so that scaling rounds nothing.
 func (v Variable) reach(nominal, impedance, omega float64) float64 {
 	switch v.Element {
@@ -119,7 +119,7 @@ func (v Variable) reach(nominal, impedance, omega float64) float64 {
 		impedance = 1
 	}
 	_, exponent := math.Frexp(max(nominal, impedance))
-	return math.Ldexp(1, exponent+20)
+	return math.Ldexp(1, exponent+40)
 }
 
 // fraction solves the ladder and gives H as N/D, both over 2^exponent.
@@ -182,7 +182,7 @@ func (c *Compiled) compare(l *Ladder, f float64, variables []Variable, box []flo
 			nominal := *v.In(l)
 			factors, unit := [3]float64{1, 0.5, 2}, nominal
 			if nominal == 0 {
-				factors, unit = [3]float64{0, 1e-9, 1e-6}, box[k]
+				factors, unit = [3]float64{0, 1e-15, 1e-12}, box[k]
 			}
 			x[k] = unit * factors[pattern(trial, k)]
 			*v.In(&work) = x[k]

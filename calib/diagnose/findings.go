@@ -15,6 +15,8 @@ import (
 
 // Kinds of findings.
 const (
+	NoSignal       = "no signal"
+	OddReading     = "odd reading"
 	BeyondLimit    = "beyond the limit"
 	NotSeparable   = "not separable"
 	Offset         = "offset"
@@ -36,9 +38,9 @@ const level = 0.01
 // Findings are what should be known about an evaluation, weightiest first. A
 // parameter counts as found where it exceeds its expanded uncertainty.
 func Findings(e *calib.Evaluation) []calib.Finding {
-	var out []calib.Finding
+	out := []calib.Finding{} // [] in JSON, not null
 	for _, find := range []func(*calib.Evaluation) []calib.Finding{
-		beyondLimit, notSeparable, rangeGain, gain, offset, series, scatter, misfit, lists, lapsed, limited,
+		noSignal, beyondLimit, odd, notSeparable, rangeGain, gain, offset, series, scatter, misfit, lists, lapsed, limited,
 	} {
 		out = append(out, find(e)...)
 	}
@@ -51,11 +53,11 @@ func one(kind, do, format string, args ...any) []calib.Finding {
 
 // found is a parameter's size with U where it exceeds U.
 func found(e *calib.Evaluation, x calib.Estimate, from float64) bool {
-	return x.Known && math.Abs(x.Value-from) > e.Result.CoverageFactor*x.U
+	return x.Known && math.Abs(x.Value-from) > x.Expanded()
 }
 
 func size(e *calib.Evaluation, x calib.Estimate) string {
-	U := e.Result.CoverageFactor * x.U
+	U := x.Expanded()
 	switch x.Unit {
 	case "1":
 		return quantity.SharePlusMinus(x.Value, U)
@@ -101,7 +103,7 @@ func seriesArm(p *plan.Plan) string {
 
 func notSeparable(e *calib.Evaluation) []calib.Finding {
 	f := &e.Result.Fit
-	if f.Separable || f.Intercept == nil {
+	if e.Result.Separable() || f.Intercept == nil {
 		return nil
 	}
 	text := "these readings cannot tell an offset of the detector from a series resistance of the bench"
@@ -147,16 +149,23 @@ func rangeGain(e *calib.Evaluation) []calib.Finding {
 	for i, k := range odd {
 		kg := g.Gain[k]
 		whose[i] = fmt.Sprintf("the %s range reads %s off", quantity.Plain(kg.Range/e.Plan.Detector.ToRMS, "V"),
-			quantity.SharePlusMinus(kg.Value-1, e.Result.CoverageFactor*kg.U))
+			quantity.SharePlusMinus(kg.Value-1, kg.Expanded()))
 	}
 	return one(RangeGain, "have that range adjusted or repaired; the others are judged without its error.",
 		"one gain for all ranges does not fit (%s): %s. It is the detector's.", probability(float64(g.PCommon)), strings.Join(whose, ", "))
 }
 
 // oddOnes are the ranges whose gain differs from the weighted median of all by
-// more than the random part of its expanded uncertainty, or the farthest one.
+// more than three times its random uncertainty and by a fifth of what the farthest
+// one does, or the farthest one.
 func oddOnes(e *calib.Evaluation, gains []calib.KeyGain) []int {
 	middle := weightedMedian(gains)
+	most := 0.0
+	for _, g := range gains {
+		if g.Known && g.URandom < math.Abs(g.Value-middle) {
+			most = math.Max(most, math.Abs(g.Value-middle))
+		}
+	}
 	var odd []int
 	far, farthest := -1, 0.0
 	for i, g := range gains {
@@ -167,7 +176,7 @@ func oddOnes(e *calib.Evaluation, gains []calib.KeyGain) []int {
 		if t > farthest {
 			far, farthest = i, t
 		}
-		if t > 3 {
+		if t > 3 && math.Abs(g.Value-middle) > most/5 {
 			odd = append(odd, i)
 		}
 	}
@@ -200,6 +209,7 @@ func convention(g float64) string {
 		ratio float64
 		name  string
 	}{
+		{-1, "near -1: two leads swapped, or the reference at 180°"},
 		{2 * math.Sqrt2, "near 2√2: peak-to-peak taken for rms"},
 		{1 / (2 * math.Sqrt2), "near 1/(2√2): rms taken for peak-to-peak"},
 		{math.Sqrt2, "near √2: peak taken for rms"},

@@ -40,7 +40,12 @@ func beyondLimit(e *calib.Evaluation) []calib.Finding {
 // parts says what a step's error is made of.
 func parts(e *calib.Evaluation, s *calib.StepResult) string {
 	err := float64(s.Error)
-	volts := func(v float64) string { return quantity.Format(v, 2, "V") }
+	volts := func(v float64) string {
+		if math.Abs(v) < 1e-3*math.Abs(err) {
+			v = 0
+		}
+		return quantity.Format(v, 2, "V")
+	}
 	out := []string{fmt.Sprintf("%s in all", volts(err))}
 	left := err
 	if g := gainAt(e, s); g.Known {
@@ -51,7 +56,7 @@ func parts(e *calib.Evaluation, s *calib.StepResult) string {
 	if o := offsetAt(e, s); !math.IsNaN(o) {
 		left -= o
 		name := " are the offset's"
-		if !e.Result.Fit.Separable {
+		if !e.Result.Separable() {
 			name = " an offset's or a series resistance's"
 		}
 		out = append(out, volts(o)+name)
@@ -77,7 +82,7 @@ func gainAt(e *calib.Evaluation, s *calib.StepResult) calib.Estimate {
 // offsetAt is the offset at a step, V; NaN where none is known.
 func offsetAt(e *calib.Evaluation, s *calib.StepResult) float64 {
 	o, _ := e.Result.Deciding()
-	if !o.Known && e.Result.Fit.Intercept != nil {
+	if e.Result.Fit.Intercept != nil {
 		o = *e.Result.Fit.Intercept
 	}
 	switch {
