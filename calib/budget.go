@@ -69,6 +69,41 @@ func (e *Evaluation) Budget(of string) (*Budget, error) {
 	return b, e.improve(b, s)
 }
 
+// Budgets are those of the gain (of the range with the largest U where there is
+// one a range), the offset and the series resistance, as far as they are determined.
+func (e *Evaluation) Budgets() ([]*Budget, error) {
+	asked := []string{OfGain, OfOffset, OfSeries}
+	if e.deciding.gain != gainCommon {
+		asked[0] = ""
+		worst := 0.0
+		for _, g := range e.Result.ByRange.Gain {
+			if g.Known && g.Expanded() > worst {
+				worst, asked[0] = g.Expanded(), quantity.Plain(g.Range/e.Plan.Detector.ToRMS, "V")
+			}
+		}
+	}
+	var out []*Budget
+	for _, of := range asked {
+		s, err := e.subject(of)
+		if err != nil {
+			continue // not determined, which the result says elsewhere
+		}
+		est, err := e.model.estimate(s.gain, s.held)
+		if err != nil {
+			return nil, err
+		}
+		if k := s.param(est); k < 0 || !est.result.Determined(k) {
+			continue
+		}
+		b, err := e.Budget(of)
+		if err != nil {
+			return nil, err
+		}
+		out = append(out, b)
+	}
+	return out, nil
+}
+
 // subject finds what a budget is asked of.
 func (e *Evaluation) subject(of string) (subject, error) {
 	s := subject{name: of, gain: e.deciding.gain, held: e.deciding.held}

@@ -164,7 +164,7 @@ func (f *forward) compute(nu []float64, r float64) {
 		for _, l := range s.levers {
 			e := f.elements[l.element]
 			q, _, _ := e.value(nu)
-			*l.place.at(&s.work, l.arm) += l.factor * (q - e.x)
+			*l.at.In(&s.work) += l.factor * (q - e.x)
 		}
 		arms[s.series].Stray += r
 		response := s.work.Solve(s.frequency, &f.ws)
@@ -172,7 +172,7 @@ func (f *forward) compute(nu []float64, r float64) {
 		s.h, s.z, s.perVolt = response.H, response.Z, response.Arms[s.series]
 		s.byR = sens.Arms[s.series].Stray
 		for k, l := range s.levers {
-			s.lever[k] = l.place.of(&sens, l.arm) * complex(l.factor, 0)
+			s.lever[k] = sens.By(l.at) * complex(l.factor, 0)
 		}
 	}
 	byInput := make([]complex128, len(f.inputs))
@@ -226,11 +226,11 @@ func (d *drop) size() (float64, complex128) {
 // along is a phasor's size along the direction that it is closest to of the two of
 // an axis, and the unit phasor that it is measured along.
 func along(v, axis complex128) (float64, complex128) {
-	size := cmplx.Abs(v)
+	size := math.Sqrt(real(v)*real(v) + imag(v)*imag(v)) // no drop is near the ends of float64
 	if size == 0 {
 		return 0, axis
 	}
-	u := v / complex(size, 0)
+	u := complex(real(v)/size, imag(v)/size)
 	if real(u*cmplx.Conj(axis)) < 0 {
 		return -size, -u
 	}

@@ -85,12 +85,12 @@ func (e *Evaluation) estimate() error {
 	}
 	e.asked = free
 	hold := nothing
-	r.NoSignal = !free.seesSignal()
-	if r.Fit.Separable = free.separable() && !r.NoSignal; !r.Fit.Separable {
+	if r.Fit.Separable = free.separable() && free.seesSignal(); !r.Fit.Separable {
 		hold = seriesHeld
 		if e.asked, err = m.estimate(asks, seriesHeld); err != nil {
 			return err
 		}
+		r.NoSignal = !e.asked.seesSignal()
 	}
 	fits := map[string]*estimate{asks: e.asked}
 	for _, gain := range []string{gainCommon, gainPerRange, gainPerFrequency} {

@@ -22,81 +22,6 @@ type Input struct {
 	Standard int     // index in Plan.Standards, or -1
 }
 
-// place is a number of the circuit that an input moves.
-type place int
-
-const (
-	armR place = iota
-	armL
-	armC
-	armStray
-	armLead
-	source
-	returnLead
-	returnSeen
-	inputLead
-	inputR
-	inputC
-)
-
-// at is where the number stands in the ladder.
-func (p place) at(l *circuit.Ladder, arm int) *float64 {
-	switch p {
-	case armR:
-		return &l.Arms[arm].R
-	case armL:
-		return &l.Arms[arm].L
-	case armC:
-		return &l.Arms[arm].C
-	case armStray:
-		return &l.Arms[arm].Stray
-	case armLead:
-		return &l.Arms[arm].Lead
-	case source:
-		return &l.Source
-	case returnLead:
-		return &l.Return
-	case returnSeen:
-		return &l.ReturnSeen
-	case inputLead:
-		return &l.Input.Lead
-	case inputR:
-		return &l.Input.R
-	case inputC:
-		return &l.Input.C
-	}
-	panic("calib: no such place in the circuit")
-}
-
-// of is the derivative of the transfer with respect to the number.
-func (p place) of(s *circuit.Sensitivity, arm int) complex128 {
-	switch p {
-	case armR:
-		return s.Arms[arm].R
-	case armL:
-		return s.Arms[arm].L
-	case armC:
-		return s.Arms[arm].C
-	case armStray:
-		return s.Arms[arm].Stray
-	case armLead:
-		return s.Arms[arm].Lead
-	case source:
-		return s.Source
-	case returnLead:
-		return s.Return
-	case returnSeen:
-		return s.ReturnSeen
-	case inputLead:
-		return s.Input.Lead
-	case inputR:
-		return s.Input.R
-	case inputC:
-		return s.Input.C
-	}
-	panic("calib: no such place in the circuit")
-}
-
 // element is a stated quantity that the expected drops depend on. Its true value
 // is (x + own)·(1 + shared), own and shared being inputs where they are uncertain.
 type element struct {
@@ -108,8 +33,7 @@ type element struct {
 // the number changes by factor times the change of the element.
 type lever struct {
 	element int
-	place   place
-	arm     int
+	at      circuit.Variable
 	factor  float64
 }
 
@@ -146,9 +70,9 @@ func newBench(p *plan.Plan) *bench {
 	b.listArms()
 	d := &p.Detector
 	if !math.IsInf(d.InputResistance.X, 0) {
-		b.fixed = pull(b.fixed, b.enter("detector's input resistance", "Ω", d.InputResistance), inputR, -1, 1)
+		b.fixed = pull(b.fixed, b.enter("detector's input resistance", "Ω", d.InputResistance), circuit.Variable{Element: circuit.InputR}, 1)
 	}
-	b.fixed = pull(b.fixed, b.enter("detector's input capacitance", "F", d.InputCapacitance), inputC, -1, 1)
+	b.fixed = pull(b.fixed, b.enter("detector's input capacitance", "F", d.InputCapacitance), circuit.Variable{Element: circuit.InputC}, 1)
 	b.listReadout()
 	return b
 }
@@ -188,11 +112,11 @@ func (b *bench) enter(name, unit string, q plan.Quantity) int {
 }
 
 // pull appends a lever by which an element, if there is one, moves one number of the circuit.
-func pull(levers []lever, element int, at place, arm int, factor float64) []lever {
+func pull(levers []lever, element int, at circuit.Variable, factor float64) []lever {
 	if element < 0 || factor == 0 {
 		return levers
 	}
-	return append(levers, lever{element, at, arm, factor})
+	return append(levers, lever{element, at, factor})
 }
 
 func (b *bench) listAmplitudes() {
@@ -218,7 +142,7 @@ func (b *bench) listAmplitudes() {
 			b.relative = append(b.relative, relative{k, -1, i})
 		}
 	}
-	b.source = pull(nil, b.enter("source resistance", "Ω", g.SourceResistance), source, -1, 1)
+	b.source = pull(nil, b.enter("source resistance", "Ω", g.SourceResistance), circuit.Variable{Element: circuit.SourceR}, 1)
 }
 
 func (b *bench) listArms() {
@@ -227,43 +151,44 @@ func (b *bench) listArms() {
 	for i := range b.plan.Arms {
 		a := &b.plan.Arms[i]
 		warm := b.plan.Temperature.X - a.ReferenceTemperature
-		b.fixed = pull(b.fixed, b.enter(a.Name+"'s capacitance", "F", a.Capacitance), armC, i, 1)
-		b.fixed = pull(b.fixed, b.enter(a.Name+"'s inductance", "H", a.Inductance), armL, i, 1)
+		b.fixed = pull(b.fixed, b.enter(a.Name+"'s capacitance", "F", a.Capacitance), circuit.Variable{Element: circuit.ArmC, Arm: i}, 1)
+		b.fixed = pull(b.fixed, b.enter(a.Name+"'s inductance", "H", a.Inductance), circuit.Variable{Element: circuit.ArmL, Arm: i}, 1)
 		coefficient := b.enter(a.Name+"'s temperature coefficient", "1/K", a.TempCo)
+		resistance := circuit.Variable{Element: circuit.ArmR, Arm: i}
 		for s, q := range a.Settings {
 			name := a.Name
 			if a.Open {
 				name += " at " + a.Nominal[s]
 			}
-			levers := pull(nil, b.enter(name, "Ω", q), armR, i, 1+a.TempCo.X*warm)
-			levers = pull(levers, coefficient, armR, i, q.X*warm)
-			levers = pull(levers, room, armR, i, q.X*a.TempCo.X)
+			levers := pull(nil, b.enter(name, "Ω", q), resistance, 1+a.TempCo.X*warm)
+			levers = pull(levers, coefficient, resistance, q.X*warm)
+			levers = pull(levers, room, resistance, q.X*a.TempCo.X)
 			b.settings[i] = append(b.settings[i], levers)
 		}
 	}
 	for i := range b.plan.Wires {
 		w := &b.plan.Wires[i]
-		at, arm := wirePlace(w)
-		b.fixed = pull(b.fixed, b.enter(w.Name, "Ω", w.Resistance), at, arm, 1)
-		b.fixed = pull(b.fixed, room, at, arm, w.Resistance.X*w.TempCo)
-		b.fixed = pull(b.fixed, b.enter(w.Name+"'s contacts", "Ω", w.Contacts), at, arm, 1)
-		b.fixed = pull(b.fixed, b.enter(w.Name+"'s capacitance", "F", w.Capacitance), inputC, -1, 1)
+		at := wireResistance(w)
+		b.fixed = pull(b.fixed, b.enter(w.Name, "Ω", w.Resistance), at, 1)
+		b.fixed = pull(b.fixed, room, at, w.Resistance.X*w.TempCo)
+		b.fixed = pull(b.fixed, b.enter(w.Name+"'s contacts", "Ω", w.Contacts), at, 1)
+		b.fixed = pull(b.fixed, b.enter(w.Name+"'s capacitance", "F", w.Capacitance), circuit.Variable{Element: circuit.InputC}, 1)
 	}
 }
 
-// wirePlace is the number of the circuit that a wire's resistance adds to.
-func wirePlace(w *plan.Wire) (place, int) {
+// wireResistance is the number of the circuit that a wire's resistance adds to.
+func wireResistance(w *plan.Wire) circuit.Variable {
 	switch {
 	case w.In == plan.InSense:
-		return inputLead, -1
+		return circuit.Variable{Element: circuit.InputLead}
 	case w.In == plan.InReturn && w.InsideTap:
-		return returnSeen, -1
+		return circuit.Variable{Element: circuit.ReturnSeenLead}
 	case w.In == plan.InReturn:
-		return returnLead, -1
+		return circuit.Variable{Element: circuit.ReturnLead}
 	case w.InsideTap:
-		return armStray, w.Arm
+		return circuit.Variable{Element: circuit.ArmStray, Arm: w.Arm}
 	}
-	return armLead, w.Arm
+	return circuit.Variable{Element: circuit.ArmLead, Arm: w.Arm}
 }
 
 // listReadout enters what stands between the drop and the reading: the loss by

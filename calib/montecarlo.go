@@ -43,19 +43,19 @@ type MonteCarlo struct {
 	Outputs     []MonteCarloOutput `json:"outputs"`
 	Correlation number             `json:"correlation_offset_series_resistance"`
 	InRegion    number             `json:"share_in_linear_region"` // of the trials, in the linear joint 95 % region of offset and series resistance
-	Validated   bool               `json:"validated"`              // every output is
+	Validated   int                `json:"validated_digits"`       // to which every linear interval is good
 }
 
 // MonteCarloOutput is one result by Monte Carlo beside the linear one.
 type MonteCarloOutput struct {
-	Name      string                 `json:"name"`
-	Unit      string                 `json:"unit"`
-	Linear    Estimate               `json:"linear"`
-	Mean      float64                `json:"mean"`
-	U         float64                `json:"u"`
-	Symmetric uncertainty.Interval   `json:"symmetric"` // probabilistically symmetric
-	Shortest  uncertainty.Interval   `json:"shortest"`
-	Check     uncertainty.Validation `json:"validation"` // of the linear interval, JCGM 101, clause 8
+	Name      string               `json:"name"`
+	Unit      string               `json:"unit"`
+	Linear    Estimate             `json:"linear"`
+	Mean      float64              `json:"mean"`
+	U         float64              `json:"u"`
+	Symmetric uncertainty.Interval `json:"symmetric"` // probabilistically symmetric
+	Shortest  uncertainty.Interval `json:"shortest"`
+	Validated int                  `json:"validated_digits"` // digits of u to which the linear interval is good (JCGM 101, clause 8): 2, 1 or 0
 }
 
 // outputs are the parameters that Monte Carlo confirms.
@@ -106,16 +106,27 @@ func (e *Evaluation) MonteCarlo(ctx context.Context, o MonteCarloOptions) (*Mont
 	if w := e.deciding.layout; w.series >= 0 && w.offset >= 0 {
 		mc.joint(e.deciding, values[indexOf(params, w.offset)], values[indexOf(params, w.series)])
 	}
-	mc.Validated = true
+	mc.Validated = digits
 	for i, v := range values {
 		out := MonteCarloOutput{Name: names[i], Unit: units[i], Linear: e.model.value(e.deciding, params[i], units[i])}
 		s := uncertainty.Summarise(v, e.Plan.Decision.Coverage)
 		out.Mean, out.U, out.Symmetric, out.Shortest = s.Mean, s.SD, s.Symmetric, s.Shortest
-		out.Check = uncertainty.Validate(out.Linear.Value, out.Linear.Expanded(), s.Symmetric, uncertainty.Tolerance(out.Linear.U, digits))
-		mc.Validated = mc.Validated && out.Check.Validated
+		out.Validated = validated(out.Linear, s.Symmetric)
+		mc.Validated = min(mc.Validated, out.Validated)
 		mc.Outputs = append(mc.Outputs, out)
 	}
 	return mc, nil
+}
+
+// validated is the number of digits of u to which a linear interval agrees with
+// that of Monte Carlo.
+func validated(linear Estimate, monteCarlo uncertainty.Interval) int {
+	for n := digits; n > 0; n-- {
+		if uncertainty.Validate(linear.Value, linear.Expanded(), monteCarlo, uncertainty.Tolerance(linear.U, n)).Validated {
+			return n
+		}
+	}
+	return 0
 }
 
 func indexOf(all []int, x int) int {

@@ -67,6 +67,8 @@ type Result struct {
 	NoSignal       bool          `json:"no_signal,omitempty"`                  // the detector does not respond to the ladder
 	Odd            []OddReading  `json:"odd_readings,omitempty"`
 	Limiting       *Limiting     `json:"limited_by_the_bench,omitempty"`
+	Budgets        []*Budget     `json:"budgets,omitempty"`     // of gain, offset and series resistance, where a report is made
+	MonteCarlo     *MonteCarlo   `json:"monte_carlo,omitempty"` // where it was asked for
 	Inputs         []InputResult `json:"inputs"`
 	Software       string        `json:"software,omitempty"`
 	PlanSHA256     string        `json:"plan_sha256,omitempty"`

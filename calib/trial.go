@@ -14,6 +14,11 @@ import (
 // estimate and goes on by Gauss–Newton steps with the covariance of the fit that
 // it confirms, the gradient being the true one at each point: so it ends where
 // the gradient of χ² vanishes, not at the linearisation.
+//
+// Gains, resistors and amplitudes, all of which multiply, move by their
+// logarithms: the predicted reading changes with the logarithm of each as it does
+// with any other, whatever their values, so that the covariance stays good far
+// from where it was made.
 type trial struct {
 	m    *model
 	e    *estimate
@@ -22,12 +27,12 @@ type trial struct {
 	gain []float64 // n × (rows + priors): derivative of the estimate with respect to readings and prior values
 	cov  []float64 // n × n
 	u    []float64 // standard uncertainties of the parameters
+	zero []float64 // where a parameter that multiplies is zero: 0, or −1 for a relative error; NaN for one that adds
 
 	states []trialState
 	rows   []trialRow
-	e0     []float64 // by drop: EMF, V
+	drops  []trialDrop
 	h      []complex128
-	pull   []complex128 // by drop: what the readings pull the drop by
 	grad   []float64
 	p      []float64
 	step   []float64
@@ -47,6 +52,15 @@ type trialRow struct {
 	along, across float64 // weights 1/s²
 }
 
+// trialDrop is one drop of a trial.
+type trialDrop struct {
+	emf  float64 // V
+	v    complex128
+	size float64 // along its axis
+	unit complex128
+	pull complex128 // what the readings pull it by
+}
+
 // trialState is one state of the circuit: the numbers of it that move.
 type trialState struct {
 	transfer transfer
@@ -54,6 +68,7 @@ type trialState struct {
 	x, x0    []float64
 	dh       []complex128
 	pull     complex128
+	series   int // the number that the series resistance is
 }
 
 // trialLever is a lever with the number of the circuit that it moves.
@@ -63,25 +78,22 @@ type trialLever struct {
 	element element
 }
 
-// transfer gives H and its derivatives with respect to the numbers that move.
-type transfer interface {
-	at(x []float64, dh []complex128) complex128
-}
-
 // newTrial prepares the confirmation of an estimate, all of whose parameters are determined.
 func newTrial(m *model, e *estimate) *trial {
 	n, rows := e.layout.n, len(e.result.Residual)
 	priors := len(e.result.PriorInfluence(0))
-	t := &trial{m: m, e: e, w: e.layout, from: e.result.P, e0: make([]float64, len(m.forward.drops)), h: make([]complex128, len(m.forward.states)),
-		pull: make([]complex128, len(m.forward.drops)), grad: make([]float64, n), p: make([]float64, n), step: make([]float64, n),
+	t := &trial{m: m, e: e, w: e.layout, from: e.result.P, drops: make([]trialDrop, len(m.forward.drops)), h: make([]complex128, len(m.forward.states)),
+		grad: make([]float64, n), p: make([]float64, n), step: make([]float64, n),
 		prior: make([]float64, priors), delta: make([]float64, rows+priors)}
 	for k := range n {
 		t.gain = append(append(t.gain, e.result.Influence(k)...), e.result.PriorInfluence(k)...)
 		t.u = append(t.u, math.Sqrt(e.result.Cov.At(k, k)))
+		t.zero = append(t.zero, math.NaN())
 		for j := range n {
 			t.cov = append(t.cov, e.result.Cov.At(k, j))
 		}
 	}
+	t.multiplying()
 	_, turns := m.start(e.layout)
 	for i := range m.obs {
 		o := &m.obs[i]
@@ -106,62 +118,99 @@ func newTrial(m *model, e *estimate) *trial {
 	return t
 }
 
+// multiplying marks the parameters that multiply and are known well enough to
+// stay away from their zero.
+func (t *trial) multiplying() {
+	mark := func(k int, zero float64) {
+		if math.Abs(t.from[k]-zero) > 10*t.u[k] {
+			t.zero[k] = zero
+		}
+	}
+	for k := range t.w.gains {
+		mark(k, 0)
+	}
+	for k, in := range t.m.forward.inputs {
+		switch {
+		case in.Unit == "Ω" || in.Unit == "V":
+			mark(t.w.inputs+k, 0)
+		case in.Unit == "1" && in.Value == 0:
+			mark(t.w.inputs+k, -1)
+		}
+	}
+}
+
+// stretch is dp/dt of a parameter that moves by its logarithm t, one at the start.
+func (t *trial) stretch(k int) float64 {
+	if zero := t.zero[k]; !math.IsNaN(zero) {
+		return (t.p[k] - zero) / (t.from[k] - zero)
+	}
+	return 1
+}
+
 // newTrialState lists the numbers of a state that its levers move, and last the
 // series resistance.
 func newTrialState(f *forward, i int) trialState {
 	s := &f.states[i]
 	out := trialState{}
-	var numbers []spot
-	at := func(n spot) int {
+	var numbers []circuit.Variable
+	at := func(v circuit.Variable) int {
 		for k, known := range numbers {
-			if known == n {
+			if known == v {
 				return k
 			}
 		}
-		numbers = append(numbers, n)
+		numbers = append(numbers, v)
 		ladder := s.stated
-		out.x0 = append(out.x0, *n.place.at(&ladder, n.arm))
+		out.x0 = append(out.x0, *v.In(&ladder))
 		return len(numbers) - 1
 	}
 	for _, l := range s.levers {
-		out.levers = append(out.levers, trialLever{at(spot{l.place, l.arm}), l.factor, f.elements[l.element]})
+		out.levers = append(out.levers, trialLever{at(l.at), l.factor, f.elements[l.element]})
 	}
-	at(spot{armStray, s.series})
+	out.series = at(circuit.Variable{Element: circuit.ArmStray, Arm: s.series})
 	out.x, out.dh = make([]float64, len(numbers)), make([]complex128, len(numbers))
 	out.transfer = newTransfer(s, numbers)
 	return out
 }
 
-// spot is one number of the circuit.
-type spot struct {
-	place place
-	arm   int
+// transfer gives H, and in dh its derivatives with respect to the numbers that move.
+type transfer interface {
+	Gradient(x []float64, dh []complex128) complex128
+}
+
+// mostCompiled is the number of variables up to which the compiled form of the
+// circuit is the faster one.
+const mostCompiled = 5
+
+func newTransfer(s *state, numbers []circuit.Variable) transfer {
+	if len(numbers) <= mostCompiled {
+		if c, err := s.stated.Compile(s.frequency, numbers); err == nil {
+			return c
+		}
+	}
+	ladder := s.stated
+	ladder.Arms = append([]circuit.Arm(nil), s.stated.Arms...)
+	return &solved{ladder: ladder, f: s.frequency, numbers: numbers}
 }
 
 // solved is the transfer by the circuit itself.
 type solved struct {
 	ladder  circuit.Ladder
 	f       float64
-	numbers []spot
+	numbers []circuit.Variable
 	ws      circuit.Workspace
 }
 
-func (s *solved) at(x []float64, dh []complex128) complex128 {
-	for k, n := range s.numbers {
-		*n.place.at(&s.ladder, n.arm) = x[k]
+func (s *solved) Gradient(x []float64, dh []complex128) complex128 {
+	for k, v := range s.numbers {
+		*v.In(&s.ladder) = x[k]
 	}
 	response := s.ladder.Solve(s.f, &s.ws)
 	sens := response.Sensitivity()
-	for k, n := range s.numbers {
-		dh[k] = n.place.of(&sens, n.arm)
+	for k, v := range s.numbers {
+		dh[k] = sens.By(v)
 	}
 	return response.H
-}
-
-func newTransfer(s *state, numbers []spot) transfer {
-	ladder := s.stated
-	ladder.Arms = append([]circuit.Arm(nil), s.stated.Arms...)
-	return &solved{ladder: ladder, f: s.frequency, numbers: numbers}
 }
 
 // settle finds the estimate for the readings and prior values of this draw, into
@@ -176,7 +225,10 @@ func (t *trial) settle() bool {
 		t.gradient()
 		worst := 0.0
 		for k := range n {
-			step := dot(t.cov[k*n:(k+1)*n], t.grad)
+			t.grad[k] *= t.stretch(k)
+		}
+		for k := range n {
+			step := t.stretch(k) * dot(t.cov[k*n:(k+1)*n], t.grad)
 			t.step[k] = step
 			worst = math.Max(worst, math.Abs(step)/t.u[k])
 		}
@@ -203,7 +255,6 @@ func dot(a, b []float64) float64 {
 func (t *trial) gradient() {
 	w, p, g := t.w, t.p, t.grad
 	clear(g)
-	clear(t.pull)
 	nu := p[w.inputs:]
 	f := t.m.forward
 	for i := range t.states {
@@ -214,9 +265,9 @@ func (t *trial) gradient() {
 			s.x[l.number] += l.factor * (q - l.element.x)
 		}
 		if w.series >= 0 {
-			s.x[len(s.x)-1] += p[w.series]
+			s.x[s.series] += p[w.series]
 		}
-		t.h[i] = s.transfer.at(s.x, s.dh)
+		t.h[i] = s.transfer.Gradient(s.x, s.dh)
 		s.pull = 0
 	}
 	for i := range f.drops {
@@ -225,7 +276,11 @@ func (t *trial) gradient() {
 		for _, k := range d.relative {
 			emf *= 1 + nu[k]
 		}
-		t.e0[i] = emf
+		v := complex(emf, 0) * t.h[d.state]
+		t.drops[i] = trialDrop{emf: emf, v: v}
+		if t.m.axes == 1 {
+			t.drops[i].size, t.drops[i].unit = along(v, d.axis)
+		}
 	}
 	for i := range t.rows {
 		t.row(i)
@@ -248,7 +303,7 @@ func (t *trial) row(i int) {
 	nu := p[w.inputs:]
 	d := &t.m.forward.drops[r.drop]
 	o := &t.m.obs[r.obs]
-	v := complex(t.e0[r.drop], 0) * t.h[d.state]
+	drop := &t.drops[r.drop]
 	offset, offsetY, g := 0.0, 0.0, p[r.gain]
 	if w.offset >= 0 {
 		offset = p[w.offset] * r.full
@@ -263,7 +318,7 @@ func (t *trial) row(i int) {
 		}
 		sin, cos := math.Sincos(phase)
 		turned := complex(cos*r.cos+sin*r.sin, sin*r.cos-cos*r.sin) // e^{j(φ_f − φ)}
-		signal := v * turned * r.turn
+		signal := drop.v * turned * r.turn
 		res := t.read[i]*r.turn - complex(g, 0)*signal - complex(offset, offsetY)*r.turn
 		q := complex(real(res)*r.along, imag(res)*r.across)
 		grad[r.gain] += inner(signal, q)
@@ -276,10 +331,10 @@ func (t *trial) row(i int) {
 		if w.offsetY >= 0 {
 			grad[w.offsetY] += r.full * inner(complex(-imag(r.turn), real(r.turn)), q)
 		}
-		t.pull[r.drop] += complex(g, 0) * cmplx.Conj(turned*r.turn) * q
+		drop.pull += complex(g, 0) * cmplx.Conj(turned*r.turn) * q
 		return
 	}
-	size, unit := along(v, d.axis)
+	size := drop.size
 	c, byLoss, byTurn := 1.0, 0.0, 0.0
 	loss, turn := t.m.forward.cosine[d.frequency], t.m.forward.turn[d.frequency]
 	if t.m.plan.Detector.Reads == plan.InPhase {
@@ -311,7 +366,7 @@ func (t *trial) row(i int) {
 	if byTurn != 0 {
 		grad[w.inputs+turn] += q * g * size * byTurn
 	}
-	t.pull[r.drop] += complex(q*g*c, 0) * unit
+	drop.pull += complex(q*g*c, 0) * drop.unit
 }
 
 // throughMeter is a reading taken with a voltmeter at the analogue output.
@@ -353,17 +408,18 @@ func (t *trial) backThroughDrops(nu []float64) {
 	for i := range f.drops {
 		d := &f.drops[i]
 		s := &t.states[d.state]
-		pull := t.pull[i]
-		s.pull += complex(t.e0[i], 0) * pull
+		drop := &t.drops[i]
+		pull := drop.pull
+		s.pull += complex(drop.emf, 0) * pull
 		byEMF := inner(t.h[d.state], pull) // of the drop's EMF
 		emf, own, shared := f.emf[d.amplitude].value(nu)
 		if emf != 0 {
-			scale := t.e0[i] / emf
+			scale := drop.emf / emf
 			add(f.emf[d.amplitude].own, byEMF*scale*own)
 			add(f.emf[d.amplitude].shared, byEMF*scale*shared)
 		}
 		for _, k := range d.relative {
-			add(k, byEMF*t.e0[i]/(1+nu[k]))
+			add(k, byEMF*drop.emf/(1+nu[k]))
 		}
 	}
 	for i := range t.states {
@@ -375,7 +431,7 @@ func (t *trial) backThroughDrops(nu []float64) {
 			add(l.element.shared, by*shared)
 		}
 		if w.series >= 0 {
-			g[w.series] += inner(s.dh[len(s.dh)-1], s.pull)
+			g[w.series] += inner(s.dh[s.series], s.pull)
 		}
 	}
 }

@@ -124,9 +124,9 @@ func (v Variable) reach(nominal, impedance, omega float64) float64 {
 
 // fraction solves the ladder and gives H as N/D, both over 2^exponent.
 //
-// D is the determinant of the ladder's loops, the product of the impedances that each loop meets with those before it opened: they are what the
-// solution goes through anyway. An element with C across it adds a factor 1 + jωC·(R + jωL), the detector's R a loop of its own. Where a
-// loop has nothing in it but shorts, neither has the detector: N = D = 0.
+// D is the determinant of the ladder's loops: the product of the impedances around each of them, those nearer to the generator opened. The solution
+// goes through them anyway. An element with C across it adds a factor 1 + jωC·(R + jωL), the detector's R a loop of its own. Where a loop
+// has nothing in it but shorts, N vanishes with D.
 func (w *Workspace) fraction(l *Ladder, f float64) (n, d complex128, exponent int) {
 	unloaded := *l
 	unloaded.Input.R = math.Inf(1)

@@ -6,9 +6,9 @@ import "math/bits"
 //
 //	H(x) = N(x)/D(x),  N and D multi-affine: Σ over the subsets S of {1 … q} of a complex coefficient times Π xₖ, k in S
 //
-// [Ladder.Compile] makes one. H has a relative accuracy of 1e-12. Any number of goroutines may use a Compiled that none of them contracts into.
-// With too many or too few values its methods panic. Where the values leave a loop nothing but shorts, two shunts of 0 Ω side by side for one, N = D = 0 and
-// the results are NaN.
+// [Ladder.Compile] makes one. H has a relative accuracy of 1e-12. Any number of goroutines may use a Compiled that none of them contracts
+// into. With too many or too few values its methods panic. Where the values leave a loop with nothing but shorts, two shunts of 0 Ω side by
+// side for one, N = D = 0 and the results are NaN.
 type Compiled struct {
 	// The coefficient of a subset S stands at the number whose binary digits say who is in S, the first variable's digit being the highest.
 	// So the polynomials without x₁ are the first half of all, and those that x₁ multiplies the second.

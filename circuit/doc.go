@@ -33,6 +33,8 @@
 // arms. The generator stays connected in the second distribution. The textbook two-port form Z = z22 − z12²/(z11 + Zs) would lose
 // digits where the tap is close to the generator; here no impedance is ever found as a difference.
 //
+// Where a few numbers of the ladder vary over very many values, [Ladder.Compile] turns its solutions into a quotient of polynomials: a [Compiled].
+//
 // # Limits
 //
 // A 0 Ω element is a short. Where two shorts lie side by side their currents are not determined; they are then taken as

@@ -108,6 +108,9 @@ func (n *netlist) nodal(omega, emf, probe float64) (current, voltage map[string]
 	}
 	for k, p := range n.parts {
 		i := x[nodes+k].float()
+		if cmplx.Abs(i) < 1e-50 { // what 200 digits leave of an arm that leads nowhere
+			i = 0
+		}
 		if p.kind == 'V' {
 			i = -i
 		}

@@ -65,7 +65,7 @@ func bySize(lines []uncertainty.Line) []uncertainty.Line {
 
 // sized is a value with its expanded uncertainty.
 func sized(x, U float64, unit string) string {
-	return sizeOf(calib.Estimate{Value: x, U: U, Unit: unit, Known: true}, 1)
+	return sizeOf(calib.Estimate{Value: x, U: U, K: 1, Unit: unit, Known: true})
 }
 
 // uncertain is an uncertainty to two digits.

@@ -20,9 +20,10 @@ func Expect(p *plan.Plan, x *calib.Expectation) string {
 	if p.Title != "" {
 		fmt.Fprintln(&b, fit(p.Title, columns))
 	}
-	fmt.Fprintf(&b, "%d steps, %s of waiting for the filter, without the time to change settings\n", len(x.Steps), duration(x.BenchTime))
-	fmt.Fprintf(&b, "all voltages rms; U is expanded (k = %.3g)\n\n", x.CoverageFactor)
-	fmt.Fprintf(&b, "%-7s%-25s%-9s%-7s%-13s%-8s%s\n", "step", "drop (standard u)", "phase", "scatter", " of one", "wait", "limit (limit/U)")
+	fmt.Fprintf(&b, "%d steps; %s of waiting for the filter, changes of setting not counted\n", len(x.Steps), duration(x.BenchTime))
+	fmt.Fprintf(&b, "all voltages rms; U is expanded, for a coverage of %.4g %%\n\n", 100*p.Decision.Coverage)
+	fmt.Fprintln(&b, columnsOf([]string{"step", "drop (standard u)", "phase", "one reading's", "wait", "limit"}, expectWidths...))
+	fmt.Fprintln(&b, columnsOf([]string{"", "", "", "scatter", "", "(limit/U)"}, expectWidths...))
 	for _, s := range x.Steps {
 		expectedStep(&b, p, &s)
 	}
@@ -39,10 +40,13 @@ func expectedStep(b *strings.Builder, p *plan.Plan, s *calib.ExpectedStep) {
 		limit = fmt.Sprintf("%s (%s)", quantity.Format(float64(s.Limit), 3, "V"), quantity.Format(float64(s.Ratio), 2, "1"))
 	}
 	set := fmt.Sprintf("%s, on %s at %s", stepSettings(p, &p.Steps[s.Index]), displayed(s.Range/p.Detector.ToRMS), percent(s.Share))
-	fmt.Fprintf(b, "%-7s%s\n", fit(s.ID, 6), fit(set, columns-7))
-	fmt.Fprintf(b, "%-7s%-25s%-9s%-20s%-8s%s\n", "", quantity.Concise(s.Drop, s.UExpected, "V"), fmt.Sprintf("%.2f°", math.Round(100*s.PhaseDeg)/100+0),
-		quantity.Format(s.SigmaOne, 2, "V"), duration(s.Wait), limit)
+	fmt.Fprintln(b, columnsOf([]string{tail(s.ID, 6), fit(set, columns-7)}, 7))
+	fmt.Fprintln(b, columnsOf([]string{"", quantity.Concise(s.Drop, s.UExpected, "V"), fmt.Sprintf("%.2f°", math.Round(100*s.PhaseDeg)/100+0),
+		quantity.Format(s.SigmaOne, 2, "V"), duration(s.Wait), limit}, expectWidths...))
 }
+
+// expectWidths are the columns of an expectation's table.
+var expectWidths = []int{7, 22, 10, 15, 10}
 
 // resolves says what the plan can tell, before anyone has measured.
 func resolves(b *strings.Builder, p *plan.Plan, x *calib.Expectation) {
@@ -51,11 +55,11 @@ func resolves(b *strings.Builder, p *plan.Plan, x *calib.Expectation) {
 		case !e.Known:
 			return "not determined"
 		case e.Unit == "1":
-			return quantity.Share(x.CoverageFactor*e.U, 2)
+			return quantity.Share(e.Expanded(), 2)
 		case e.Unit == "ohm":
-			return quantity.Format(x.CoverageFactor*e.U, 2, "Ω")
+			return quantity.Format(e.Expanded(), 2, "Ω")
 		}
-		return quantity.Format(x.CoverageFactor*e.U, 2, e.Unit)
+		return quantity.Format(e.Expanded(), 2, e.Unit)
 	}
 	fmt.Fprintln(b, "What this plan can resolve (U of what is found)")
 	fmt.Fprintf(b, "  gain               %s\n", u(x.Gain))
@@ -65,7 +69,7 @@ func resolves(b *strings.Builder, p *plan.Plan, x *calib.Expectation) {
 		for _, pair := range []string{"gain,offset", "gain,series_resistance", "offset,series_resistance"} {
 			if rho, ok := x.Correlation[pair]; ok {
 				a, c, _ := strings.Cut(strings.ReplaceAll(pair, "_", " "), ",")
-				fmt.Fprintf(b, "  correlation of %s and %s: %.2f\n", a, c, float64(rho))
+				fmt.Fprintf(b, "  correlation of %s and %s: %.2f\n", a, c, math.Round(100*float64(rho))/100+0)
 			}
 		}
 	} else {

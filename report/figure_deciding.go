@@ -25,7 +25,7 @@ type figureDeciding struct {
 // figureDecidingLine takes it from the fit that the errors come from.
 func figureDecidingLine(e *calib.Evaluation) figureDeciding {
 	r := e.Result
-	f := figureDeciding{separable: r.Fit.Separable, offset: r.Fit.Offset, series: r.Fit.SeriesResistance,
+	f := figureDeciding{separable: r.Separable(), offset: r.Fit.Offset, series: r.Fit.SeriesResistance,
 		correlation: float64(r.Fit.Correlation["offset,series_resistance"]), perRange: e.Plan.Fit.OffsetPerRange, factor: r.CoverageFactor}
 	f.gain = func(*calib.StepResult) float64 { return r.Fit.Gain.Value }
 	if !r.Fit.Gain.Known {

@@ -15,16 +15,15 @@ func frequencyFigure(e *calib.Evaluation) *figureSheet {
 	if e.Result.ByFreq == nil {
 		return nil
 	}
-	k := e.Result.CoverageFactor
 	var gains, phases []figureResponse
 	for _, g := range e.Result.ByFreq.Gain {
 		if g.Known && g.Frequency > 0 {
-			gains = append(gains, figureResponse{g.Frequency, g.Value - 1, k * g.U, k * g.URandom})
+			gains = append(gains, figureResponse{g.Frequency, g.Value - 1, g.Expanded(), g.K * g.URandom})
 		}
 	}
 	for _, p := range e.Result.Fit.Phase {
 		if p.Estimate.Known && p.Frequency > 0 {
-			phases = append(phases, figureResponse{p.Frequency, p.Estimate.Value, k * p.Estimate.U, k * p.Estimate.URandom})
+			phases = append(phases, figureResponse{p.Frequency, p.Estimate.Value, p.Estimate.Expanded(), p.Estimate.K * p.Estimate.URandom})
 		}
 	}
 	if len(gains) < 2 {

@@ -122,11 +122,11 @@ func (s *figureSheet) region(f *calib.FitResult) {
 // cannot be told apart: o/intercept + r/as series = 1.
 func (s *figureSheet) valley(e *calib.Evaluation) {
 	f := &e.Result.Fit
-	o0, r0, k := f.Intercept.Value, f.AsSeries.Value, e.Result.CoverageFactor
-	half := k * f.Intercept.U
+	o0, r0 := f.Intercept.Value, f.AsSeries.Value
+	half := f.Intercept.Expanded()
 	o, r := newFigureSpan(), newFigureSpan()
 	o.add(0, o0-half, o0+half)
-	r.add(0, r0-k*f.AsSeries.U, r0+k*f.AsSeries.U)
+	r.add(0, r0-f.AsSeries.Expanded(), r0+f.AsSeries.Expanded())
 	panel, scaleO, scaleR := jointPanel(o, r, f.Intercept.Unit)
 	at := func(r, aside float64) figureXY { return figureXY{(o0*(1-r/r0) + aside) / scaleO, r / scaleR} }
 	low, high := panel.Y.Min*scaleR, panel.Y.Max*scaleR

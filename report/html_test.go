@@ -258,8 +258,8 @@ func TestHTMLSaysWhatCannotBeToldApart(t *testing.T) {
 	o, r := reference.Fit.Intercept, reference.Fit.AsSeries
 	summary := page[strings.Index(page, `id="summary"`):strings.Index(page, `id="findings"`)]
 	for _, want := range []string{
-		typeset(sizeOf(calib.Estimate{Value: o.Value, U: o.U, Unit: "V", Known: true}, k)),
-		typeset(sizeOf(calib.Estimate{Value: r.Value, U: r.U, Unit: "ohm", Known: true}, k)),
+		typeset(sizeOf(calib.Estimate{Value: o.Value, U: o.U, K: k, Unit: "V", Known: true})),
+		typeset(sizeOf(calib.Estimate{Value: r.Value, U: r.U, K: k, Unit: "ohm", Known: true})),
 		"cannot be told apart", "All steps pass if the series resistance is between", "the detector&#39;s", "the bench&#39;s",
 	} {
 		if !strings.Contains(summary, want) {

@@ -21,7 +21,7 @@ func method(e *calib.Evaluation) []pair {
 			"Beside it stand the fits with a gain for each range and each frequency."},
 		{"Uncertainty", fmt.Sprintf("The covariance of that one problem carries the scatter of the readings, the inputs and all correlations. "+
 			"The scatter of one reading is predicted from noise, bandwidth of the filter, resolution and short-term stability; repeats reduce all but the resolution, and their observed scatter is tested against the prediction. "+
-			"A tolerance is a rectangular distribution, with its half-width over √3 for its standard uncertainty. U = k·u with k = %.3f, for a coverage of %.4g %%.", r.CoverageFactor, 100*r.Coverage)},
+			"A tolerance is a rectangular distribution, with its half-width over √3 for its standard uncertainty. U = k·u for a coverage of %.4g %%: k from Student's t at the effective degrees of freedom (Welch and Satterthwaite), or, where one rectangular input dominates, from the convolution with the rest.", 100*r.Coverage)},
 		{"Error", "A step's error is its mean reading less the reading expected there with every input at its stated value: the standards are not corrected by the instrument under test. " +
 			"The fitted series resistance is the bench's and is counted as part of what is expected."},
 	}

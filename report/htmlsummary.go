@@ -11,7 +11,7 @@ import (
 // summary is what the detector and the bench have, each with whose it is.
 func summary(e *calib.Evaluation) grid {
 	r := e.Result
-	f, k := &r.Fit, r.CoverageFactor
+	f := &r.Fit
 	type line struct {
 		name, whose string
 		estimate    calib.Estimate
@@ -59,29 +59,29 @@ func summary(e *calib.Evaluation) grid {
 			if lines[i].instead != "" {
 				return lines[i].instead
 			}
-			return typeset(sizeOf(lines[i].estimate, k))
+			return typeset(sizeOf(lines[i].estimate))
 		}),
-		texts("U from the readings alone", "number", func(i int) string { return fromReadings(lines[i].estimate, k) }),
+		texts("U from the readings alone", "number", func(i int) string { return fromReadings(lines[i].estimate) }),
 		texts("whose", "words", func(i int) string { return lines[i].whose }),
 		texts("shown to be there", "words", func(i int) string {
 			switch x := lines[i].estimate; {
 			case !x.Known:
 				return ""
-			case math.Abs(x.Value) <= k*x.U:
+			case math.Abs(x.Value) <= x.Expanded():
 				return "no, less than U"
 			}
 			return "yes"
 		}),
 	}}
-	g.Notes = append(g.Notes, fmt.Sprintf("U is the expanded uncertainty, U = k·u with k = %.3f, for a coverage of %.4g %%.", k, 100*r.Coverage))
+	g.Notes = append(g.Notes, fmt.Sprintf("U is the expanded uncertainty, U = k·u, for a coverage of %.4g %%; k is that of each result's own budget.", 100*r.Coverage))
 	g.Notes = append(g.Notes, separation(e)...)
 	g.Notes = append(g.Notes, fitness(r))
 	return g
 }
 
 // fromReadings is the expanded uncertainty that the readings bring to an estimate.
-func fromReadings(x calib.Estimate, k float64) string {
-	U := k * x.URandom
+func fromReadings(x calib.Estimate) string {
+	U := x.K * x.URandom
 	switch {
 	case !x.Known:
 		return ""

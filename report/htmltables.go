@@ -22,7 +22,7 @@ func gainTables(e *calib.Evaluation) []grid {
 		g.addFilled(texts("phase against the reference ± U", "number", func(i int) string {
 			for _, f := range r.Fit.Phase {
 				if f.Frequency == r.ByFreq.Gain[i].Frequency {
-					return typeset(sizeOf(f.Estimate, r.CoverageFactor))
+					return typeset(sizeOf(f.Estimate))
 				}
 			}
 			return ""
@@ -33,12 +33,12 @@ func gainTables(e *calib.Evaluation) []grid {
 }
 
 func gainTable(e *calib.Evaluation, gains *calib.Gains, caption, key string, name func(calib.KeyGain) string) grid {
-	all, k := gains.Gain, e.Result.CoverageFactor
+	all := gains.Gain
 	g := grid{Caption: caption, Rows: len(all)}
 	g.addFilled(
 		texts(key, "number", func(i int) string { return name(all[i]) }),
-		texts("deviation from 1 ± U", "number", func(i int) string { return typeset(gainDeviation(all[i].Estimate, k)) }),
-		texts("U from the readings alone", "number", func(i int) string { return fromReadings(all[i].Estimate, k) }),
+		texts("deviation from 1 ± U", "number", func(i int) string { return typeset(gainDeviation(all[i].Estimate)) }),
+		texts("U from the readings alone", "number", func(i int) string { return fromReadings(all[i].Estimate) }),
 	)
 	judged := false
 	for _, x := range all {

@@ -31,7 +31,7 @@ func decided(e *calib.Evaluation) string {
 	for _, g := range r.ByRange.Gain {
 		if g.Outcome == r.Verdict {
 			return typeset(fmt.Sprintf("The gain of the %s range decides: it is off by %s where the limit is %s; no step is worse.",
-				displayed(g.Range/e.Plan.Detector.ToRMS), gainDeviation(g.Estimate, r.CoverageFactor), quantity.Share(g.Limit, 2)))
+				displayed(g.Range/e.Plan.Detector.ToRMS), gainDeviation(g.Estimate), quantity.Share(g.Limit, 2)))
 		}
 	}
 	return fmt.Sprintf("The steps that were read are good, but %d of %d have no reading; until they are taken the verdict is a conditional pass at best.",
@@ -105,5 +105,5 @@ func whyConditional(e *calib.Evaluation, s *calib.StepResult) string {
 
 // angleOf is an angle with its expanded uncertainty, in degrees.
 func angleOf(x, U float64) string {
-	return sizeOf(calib.Estimate{Value: x, U: U, Unit: "rad", Known: true}, 1)
+	return sizeOf(calib.Estimate{Value: x, U: U, K: 1, Unit: "rad", Known: true})
 }

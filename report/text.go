@@ -26,6 +26,7 @@ func Text(e *calib.Evaluation, colour bool) string {
 	head(&b, e, colour)
 	parameters(&b, e)
 	ranges(&b, e)
+	confirmed(&b, e.Result.MonteCarlo)
 	left := maxLines - strings.Count(b.String(), "\n")
 	b.WriteString(findings(e.Result.Findings, left))
 	return b.String()
@@ -91,28 +92,29 @@ func decisive(e *calib.Evaluation) string {
 // parameters are gain, offset and series resistance, and whose they are.
 func parameters(b *strings.Builder, e *calib.Evaluation) {
 	r := e.Result
-	f, k := &r.Fit, r.CoverageFactor
-	fmt.Fprintf(b, "%-20s%-38s%s\n", "", fmt.Sprintf("value ± U  (%.4g %%, k = %.3g)", 100*r.Coverage, k), "whose")
+	f := &r.Fit
+	fmt.Fprintf(b, "%-20s%-38s%s\n", "", fmt.Sprintf("value ± U (%.4g %% coverage)", 100*r.Coverage), "whose")
 	line := func(name, value, whose string) { fmt.Fprintf(b, "%-20s%-38s%s\n", name, value, whose) }
 	if r.ByRange.Used {
 		line("gain, from 1", "one a range, below", "the detector's")
 	} else if f.Gain.Known {
-		line("gain, from 1", gainDeviation(f.Gain, k), "the detector's")
+		line("gain, from 1", gainDeviation(f.Gain), "the detector's")
 	}
-	if offset, series := r.Deciding(); f.Separable {
-		line("offset", sizeOf(offset, k), "the detector's")
+	if offset, series := r.Deciding(); r.Separable() {
+		line("offset", sizeOf(offset), "the detector's")
 		if f.OffsetQuadrature != nil {
-			line("offset, quadrature", sizeOf(*f.OffsetQuadrature, k), "the detector's")
+			line("offset, quadrature", sizeOf(*f.OffsetQuadrature), "the detector's")
 		}
-		line("series resistance", sizeOf(series, k), "the bench's")
+		line("series resistance", sizeOf(series), "the bench's")
 	} else if f.Intercept != nil && f.AsSeries != nil {
-		line("either an offset", sizeOf(*f.Intercept, k), "the detector's")
-		line("or in series", sizeOf(*f.AsSeries, k), "the bench's")
+		line("either an offset", sizeOf(*f.Intercept), "the detector's")
+		line("or in series", sizeOf(*f.AsSeries), "the bench's")
 	}
 	b.WriteByte('\n')
 }
 
-// ranges are the worst step of each range, and the range's gain where one gain is not enough.
+// ranges are the worst step of each range, and the range's gain where one gain is
+// not enough or the plan limits it.
 func ranges(b *strings.Builder, e *calib.Evaluation) {
 	r := e.Result
 	worst := map[float64]*calib.StepResult{}
@@ -127,35 +129,69 @@ func ranges(b *strings.Builder, e *calib.Evaluation) {
 		}
 	}
 	sort.Sort(sort.Reverse(sort.Float64Slice(scales)))
-	const shown = 9
-	fmt.Fprintf(b, "%-10s%-10s%-26s%-18s%s\n", "range", "worst at", "error ± U", "limit", "outcome")
+	row := func(cells ...string) { fmt.Fprintln(b, strings.TrimRight(columnsOf(cells, 10, 9, 25, 19), " ")) }
+	row("range", "worst at", "error ± U", "limit", "outcome")
 	for i, full := range scales {
-		if i == shown && len(scales) > shown+1 {
-			fmt.Fprintf(b, "and %d more ranges\n", len(scales)-shown)
+		if i == mostRanges && len(scales) > mostRanges+1 {
+			fmt.Fprintf(b, "and %d more ranges\n", len(scales)-mostRanges)
 			break
 		}
 		s := worst[full]
-		limit := "none"
-		if !math.IsNaN(float64(s.Limit)) {
-			limit = fmt.Sprintf("%s (%s)", quantity.Format(float64(s.Limit), 3, "V"), percent(math.Abs(float64(s.Error))/float64(s.Limit)))
-		}
-		fmt.Fprintf(b, "%-10s%-10s%-26s%-18s%s\n", displayed(full/e.Plan.Detector.ToRMS), fit(s.ID, 9),
-			quantity.PlusMinus(float64(s.Error), float64(s.U), "V"), limit, s.Outcome)
+		row(displayed(full/e.Plan.Detector.ToRMS), tail(s.ID, 9), quantity.PlusMinus(float64(s.Error), float64(s.U), "V"),
+			against(quantity.Format(float64(s.Limit), 3, "V"), float64(s.Error), float64(s.Limit)), s.Outcome.String())
 	}
-	gains := r.ByRange.Gain
-	for i := range gains {
-		g := gains[len(gains)-1-i]
+	shown := 0
+	for i := range r.ByRange.Gain {
+		g := r.ByRange.Gain[len(r.ByRange.Gain)-1-i]
 		if g.Outcome == decision.NotJudged && !r.ByRange.Used {
 			continue
 		}
-		limit := "none"
-		if g.Outcome != decision.NotJudged {
-			limit = fmt.Sprintf("%s (%s)", quantity.Share(g.Limit, 2), percent(math.Abs(g.Value-1)/g.Limit))
+		if shown++; shown > mostRanges {
+			fmt.Fprintln(b, "and more gains: see the report (--out) or --json")
+			break
 		}
-		fmt.Fprintf(b, "%-10s%-10s%-26s%-18s%s\n", displayed(g.Range/e.Plan.Detector.ToRMS), "its gain",
-			gainDeviation(g.Estimate, r.CoverageFactor), limit, g.Outcome)
+		row(displayed(g.Range/e.Plan.Detector.ToRMS), "its gain", gainDeviation(g.Estimate), against(quantity.Share(g.Limit, 2), g.Value-1, g.Limit), g.Outcome.String())
 	}
 	b.WriteByte('\n')
+}
+
+// mostRanges is how many ranges, and gains of ranges, the summary shows.
+const mostRanges = 9
+
+// against is a limit and the share of it that a deviation takes.
+func against(limit string, deviation, bound float64) string {
+	if math.IsNaN(bound) {
+		return "none"
+	}
+	share := math.Abs(deviation) / bound
+	if share > 10 {
+		return limit + " (>1000 %)"
+	}
+	return limit + " (" + percent(share) + ")"
+}
+
+// columnsOf lays cells out in columns, with a space at least between them.
+func columnsOf(cells []string, widths ...int) string {
+	var b strings.Builder
+	end := 0
+	for i, c := range cells {
+		b.WriteString(c)
+		if i == len(cells)-1 {
+			break
+		}
+		end += widths[i]
+		pad := max(1, end-len([]rune(b.String())))
+		b.WriteString(strings.Repeat(" ", pad))
+	}
+	return b.String()
+}
+
+// tail cuts a name at its front, where it is too long: steps differ at the end.
+func tail(s string, width int) string {
+	if r := []rune(s); len(r) > width {
+		return "…" + string(r[len(r)-width+1:])
+	}
+	return s
 }
 
 // displayed is a full-scale value as the detector's panel has it.
@@ -185,7 +221,7 @@ func findings(all []calib.Finding, lines int) string {
 		}
 		// One line is kept for saying how many more there are.
 		if keep := min(1, len(all)-1-i); used+len(block)+keep > lines {
-			fmt.Fprintf(&b, "%d more findings: see the report (--out) or --json\n", len(all)-i)
+			fmt.Fprintf(&b, "%s more: see the report (--out) or --json\n", calib.Counted(len(all)-i, "finding"))
 			break
 		}
 		used += len(block)

@@ -61,8 +61,8 @@ func amplitude(p *plan.Plan, s *plan.Step) string {
 
 // sizeOf is an estimate with its expanded uncertainty k·u; a share is in percent
 // or ppm, an angle in degrees.
-func sizeOf(e calib.Estimate, k float64) string {
-	U := k * e.U
+func sizeOf(e calib.Estimate) string {
+	U := e.Expanded()
 	switch {
 	case !e.Known:
 		return "not determined"
@@ -77,10 +77,36 @@ func sizeOf(e calib.Estimate, k float64) string {
 }
 
 // gainDeviation is a gain's deviation from 1, as a share.
-func gainDeviation(e calib.Estimate, k float64) string {
+func gainDeviation(e calib.Estimate) string {
 	e.Value--
-	return sizeOf(e, k)
+	return sizeOf(e)
 }
 
 // degrees is an angle in whole or broken degrees: 180°.
 func degrees(rad float64) string { return fmt.Sprintf("%.6g°", rad*180/math.Pi) }
+
+// concise is a value with its standard uncertainty in parentheses; a share in percent or ppm.
+func concise(x, u float64, unit string) string {
+	scale, unit := scaleOf(math.Max(math.Abs(x), u), unit)
+	return quantity.Concise(x/scale, u/scale, "1") + " " + unit
+}
+
+// interval is "from 1.2 to 3.4 mV", to the place of the second digit of u.
+func interval(low, high, u float64, unit string) string {
+	scale, unit := scaleOf(math.Max(math.Abs(low), math.Abs(high)), unit)
+	digits := max(0, 1-int(math.Floor(math.Log10(u/scale))))
+	return fmt.Sprintf("from %.*f to %.*f %s", digits, low/scale, digits, high/scale, unit)
+}
+
+// scaleOf is the scale and the unit in which a value of a size is written.
+func scaleOf(size float64, unit string) (float64, string) {
+	switch {
+	case unit == "1" && size < 0.0005:
+		return 1e-6, "ppm"
+	case unit == "1":
+		return 0.01, "%"
+	case unit == "ohm":
+		unit = "Ω"
+	}
+	return quantity.Prefix(size, unit)
+}

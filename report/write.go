@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"os"
 	"path/filepath"
+	"slices"
 
 	"rungproof/calib"
 )
@@ -29,6 +30,9 @@ func indented(v any) ([]byte, error) {
 // figures. Everything is made in memory first, then written beside its place and
 // renamed, so that a file appears whole or not at all.
 func Write(dir string, e *calib.Evaluation) error {
+	if err := os.MkdirAll(dir, 0o777); err != nil {
+		return fmt.Errorf("the report cannot be written: %w", err)
+	}
 	figures, err := Figures(e)
 	if err != nil {
 		return err
@@ -55,8 +59,10 @@ type file struct {
 
 // writeAll writes every file under a temporary name first and renames them when all are on the disk.
 func writeAll(dir string, files []file) (err error) {
-	if err := os.MkdirAll(dir, 0o777); err != nil {
-		return fmt.Errorf("the report cannot be written: %w", err)
+	for _, f := range files {
+		if info, err := os.Lstat(filepath.Join(dir, f.name)); err == nil && info.IsDir() {
+			return fmt.Errorf("%s cannot be written: a folder of that name is in the way", filepath.Join(dir, f.name))
+		}
 	}
 	temporary := make([]string, 0, len(files))
 	defer func() {
@@ -86,5 +92,14 @@ func writeAll(dir string, files []file) (err error) {
 			return fmt.Errorf("%s cannot be written: %w", filepath.Join(dir, f.name), err)
 		}
 	}
+	// A figure of an earlier report that this one does not make would mislead.
+	for _, name := range reportFigures {
+		if !slices.ContainsFunc(files, func(f file) bool { return f.name == name }) {
+			os.Remove(filepath.Join(dir, name))
+		}
+	}
 	return nil
 }
+
+// reportFigures are the figures that a report can have.
+var reportFigures = []string{"readings.png", "errors.png", "unexplained.png", "joint.png", "frequency.png", "budget.png"}

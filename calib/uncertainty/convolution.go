@@ -17,7 +17,8 @@ import (
 //	P(|S| ≤ x) = 2/π · ∫ φ(t)·sin(x·t)/t dt,  t from 0 to ∞
 //
 // is solved for x. The error of k is below 1e-6; below 1e-5 up to 99 % where a
-// single arcsine holds all but a hundred-thousandth of u.
+// single arcsine holds all but a hundred-thousandth of u, which also takes longest,
+// some tenths of a second.
 func ConvolutionFactor(lines []Line, coverage float64) float64 {
 	checkCoverage(coverage)
 	s := newSum(lines)

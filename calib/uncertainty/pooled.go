@@ -15,7 +15,7 @@ type Group struct{ SumSquares, DOF float64 }
 // Pooled is the standard deviation of a single reading that all groups share.
 type Pooled struct {
 	SD  float64 // unit of the readings; 0 without degrees of freedom
-	DOF float64 // sum of the groups'
+	DOF float64 // sum of the groups'; 0 means none here: no knowledge of SD, not a perfect one
 }
 
 // Pool combines groups (GUM 4.2.4 and H.3.6, note; ISO 5725-2, 7.4.5.1):

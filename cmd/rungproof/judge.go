@@ -3,6 +3,7 @@ package main
 import (
 	"io"
 	"os"
+	"strconv"
 
 	"github.com/spf13/cobra"
 	"golang.org/x/term"
@@ -14,7 +15,8 @@ import (
 )
 
 func judgeCommand(s *streams) *cobra.Command {
-	var out string
+	var out, monteCarlo string
+	var seed uint64
 	var asJSON bool
 	c := &cobra.Command{
 		Use:   "judge PLAN READINGS",
@@ -23,10 +25,15 @@ func judgeCommand(s *streams) *cobra.Command {
 taken by PLAN (TOML), says whose fault a deviation is, and decides. One of the
 two files may be -, standard input.
 
+--monte-carlo confirms the estimate and its uncertainties: every input and every
+reading is drawn from its own distribution and the full estimate made again, a
+million times or as often as said; "auto" goes on until two digits are steady.
+
 Exit status: 0 pass, 1 fail, 3 conditional or not judged, 2 a fault in the input
 or the usage.`,
-		Example: "  rungproof judge plan.toml bench.csv --out report",
-		Args:    exactly("PLAN", "READINGS"),
+		Example: `  rungproof judge plan.toml bench.csv --out report
+  rungproof judge plan.toml bench.csv --monte-carlo auto`,
+		Args: exactly("PLAN", "READINGS"),
 		RunE: func(c *cobra.Command, args []string) error {
 			if out == "" && c.Flags().Changed("out") {
 				return hinted{"--out names no folder", "is a variable of the shell not set?"}
@@ -34,6 +41,18 @@ or the usage.`,
 			e, err := s.evaluate(args[0], args[1])
 			if err != nil {
 				return err
+			}
+			if monteCarlo != "" {
+				if err := s.confirm(e, monteCarlo, seed); err != nil {
+					return err
+				}
+			} else if c.Flags().Changed("seed") {
+				return hinted{"--seed goes with --monte-carlo", "nothing else here is left to chance"}
+			}
+			if out != "" || asJSON {
+				if e.Result.Budgets, err = e.Budgets(); err != nil {
+					return err
+				}
 			}
 			if out != "" {
 				if err := report.Write(out, e); err != nil {
@@ -50,6 +69,9 @@ or the usage.`,
 	}
 	c.Flags().StringVar(&out, "out", "", "write result.json, report.html and .txt, and figures to `DIR`")
 	c.Flags().BoolVar(&asJSON, "json", false, "write the content of result.json instead of the summary")
+	c.Flags().StringVar(&monteCarlo, "monte-carlo", "", "confirm by so many trials, `N` or auto (1000000 where neither is said)")
+	c.Flags().Lookup("monte-carlo").NoOptDefVal = strconv.Itoa(defaultTrials)
+	c.Flags().Uint64Var(&seed, "seed", 1, "of --monte-carlo: the same seed gives the same result")
 	return c
 }
 

@@ -49,7 +49,7 @@ func run(args []string, stdin io.Reader, stdout, stderr io.Writer) int {
 	root.SetIn(stdin)
 	root.SetOut(stdout)
 	root.SetErr(stderr)
-	root.SetArgs(args)
+	root.SetArgs(joined(args))
 	root.AddCommand(draftCommand(s), expectCommand(s), sheetCommand(s), judgeCommand(s), budgetCommand(s))
 	if err := root.Execute(); err != nil {
 		fmt.Fprintln(stderr, message(err))
@@ -67,6 +67,7 @@ the wiring)?
   rungproof expect plan.toml             what will be read, what can be resolved
   rungproof sheet plan.toml > bench.csv  a bench sheet to fill in
   rungproof judge plan.toml bench.csv    the verdict
+  rungproof budget plan.toml bench.csv   where the uncertainty comes from
 
 Exit status: 0 pass, 1 fail, 3 conditional or not judged, 2 a fault in the input
 or the usage.`
