@@ -179,7 +179,7 @@ func (m *model) apart(s subject, est *estimate) (float64, []uncertainty.Line) {
 func (m *model) lines(est *estimate, byReading, byPrior []float64, unit string) []uncertainty.Line {
 	var out []uncertainty.Line
 	for _, part := range m.readingParts(byReading) {
-		out = append(out, uncertainty.Line{Name: part.name, U: math.Sqrt(part.variance), Unit: unit, Shape: uncertainty.Normal, DOF: part.dof, Sensitivity: 1})
+		out = append(out, uncertainty.Line{Name: part.name, U: math.Sqrt(part.variance), Unit: unit, Shape: scatterShape(part.dof), DOF: part.dof, Sensitivity: 1})
 	}
 	for k, in := range m.forward.inputs {
 		out = append(out, uncertainty.Line{Name: in.Name, Value: in.Value, U: in.U, Unit: in.Unit, Shape: shapeOf(in.Shape), DOF: in.DOF, Sensitivity: byPrior[k]})
@@ -190,6 +190,14 @@ func (m *model) lines(est *estimate, byReading, byPrior []float64, unit string) 
 			Shape: shapeOf(x.Shape), DOF: x.DOF, Sensitivity: byPrior[est.prior]})
 	}
 	return out
+}
+
+// scatterShape is normal, or Student's t where the scatter was observed.
+func scatterShape(dof float64) uncertainty.Shape {
+	if dof > 0 {
+		return uncertainty.Student
+	}
+	return uncertainty.Normal
 }
 
 func shapeOf(s plan.Shape) uncertainty.Shape {

@@ -42,8 +42,9 @@ type MonteCarlo struct {
 	Unsettled   int                `json:"unsettled"`   // trials left out because their estimate did not settle
 	Outputs     []MonteCarloOutput `json:"outputs"`
 	Correlation number             `json:"correlation_offset_series_resistance"`
-	InRegion    number             `json:"share_in_linear_region"` // of the trials, in the linear joint 95 % region of offset and series resistance
-	Validated   int                `json:"validated_digits"`       // to which every linear interval is good
+	InRegion    number             `json:"share_in_linear_region"`          // of the trials, in the linear joint 95 % region of offset and series resistance
+	Drops       number             `json:"largest_deviation_of_u_of_drops"` // of the expected drops' u from the linear one, as a share
+	Validated   int                `json:"validated_digits"`                // to which every linear interval is good
 }
 
 // MonteCarloOutput is one result by Monte Carlo beside the linear one.
@@ -106,6 +107,7 @@ func (e *Evaluation) MonteCarlo(ctx context.Context, o MonteCarloOptions) (*Mont
 	if w := e.deciding.layout; w.series >= 0 && w.offset >= 0 {
 		mc.joint(e.deciding, values[indexOf(params, w.offset)], values[indexOf(params, w.series)])
 	}
+	mc.Drops = number(e.dropsDeviation(min(mc.Trials, mostDropTrials), o.Seed))
 	mc.Validated = digits
 	for i, v := range values {
 		out := MonteCarloOutput{Name: names[i], Unit: units[i], Linear: e.model.value(e.deciding, params[i], units[i])}
@@ -294,11 +296,10 @@ func (m *model) statedPrior(k int) float64 {
 // deviate is one draw of a distribution about zero, in standard uncertainties:
 // where the uncertainty has degrees of freedom, a scaled and shifted t (JCGM 101, 6.4.9).
 func deviate(shape plan.Shape, dof float64, random *rand.Rand) float64 {
-	x := draw(shape, random)
 	if shape == plan.Normal && dof > 0 && !math.IsInf(dof, 1) {
-		x = uncertainty.Draw(uncertainty.Student, dof, random)
+		return uncertainty.Draw(uncertainty.Student, dof, random)
 	}
-	return x
+	return draw(shape, random)
 }
 
 // joint compares the trials with the linear joint 95 % region of offset and

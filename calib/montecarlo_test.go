@@ -37,6 +37,7 @@ func TestMonteCarloAgreesWhereAllIsLinear(t *testing.T) {
 			near(t, name+": u of "+o.Name, o.U, o.Linear.U, 0.02*o.Linear.U)
 			near(t, name+": mean of "+o.Name, o.Mean, o.Linear.Value, 0.03*o.Linear.U)
 		}
+		near(t, name+": deviation of the drops' u", float64(mc.Drops), 0, 0.02)
 		near(t, name+": share in the joint 95 % region", float64(mc.InRegion), 0.95, 0.01)
 		if mc.Unsettled > 0 || mc.Interrupted || mc.Trials != 40000 {
 			t.Errorf("%s: %d trials, %d unsettled, interrupted: %v", name, mc.Trials, mc.Unsettled, mc.Interrupted)

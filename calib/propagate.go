@@ -66,7 +66,7 @@ func part(z complex128, axis int) float64 {
 // across (axis 1) the expected phasor, and the coverage factor of its budget.
 func (p *propagation) u(i int, r *row, axis int) (u, k float64) {
 	readings, inputs := p.variances(i, r, axis, p.priors)
-	p.lines = append(p.lines[:0], uncertainty.Line{Name: "readings", U: math.Sqrt(readings), DOF: p.m.obs[i].dof, Sensitivity: 1})
+	p.lines = append(p.lines[:0], uncertainty.Line{Name: "readings", U: math.Sqrt(readings), Shape: scatterShape(p.m.obs[i].dof), DOF: p.m.obs[i].dof, Sensitivity: 1})
 	for j, in := range p.m.forward.inputs {
 		if c := p.priors[j]; c != 0 {
 			p.lines = append(p.lines, uncertainty.Line{Name: in.Name, U: in.U, Shape: shapeOf(in.Shape), DOF: in.DOF, Sensitivity: c})

@@ -135,7 +135,8 @@ func (m *model) cosineOf(o *observation, nu []float64) float64 {
 // draw is one deviation of a distribution with mean 0 and standard deviation 1.
 func draw(shape plan.Shape, random *rand.Rand) float64 {
 	if shape == plan.Rectangular {
-		return math.Sqrt(3) * (2*random.Float64() - 1)
+		const halfWidth = 1.7320508075688772 // √3
+		return halfWidth * (2*random.Float64() - 1)
 	}
 	return random.NormFloat64()
 }

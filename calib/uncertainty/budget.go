@@ -33,17 +33,17 @@ type Budget struct {
 }
 
 // dominance is the largest ratio of the rest's standard uncertainty to that of
-// the dominating lines (EA-4/02 M:2022, S9 with one, S10 with two of them).
+// the one dominating line (EA-4/02 M:2022, S9).
 const dominance = 0.3
 
 // New combines independent lines (GUM 5.1.2, equation 10) and finds the
 // coverage factor:
 //
-//   - Where the lines with limits (rectangular, triangular, arcsine) dominate, so
-//     that all the others together have at most 0.3 of their combined standard
-//     uncertainty, it is that of the convolution of all lines in their shapes. That
-//     includes the one or two dominating lines of EA-4/02, S9 to S11; many such
-//     lines of one size have nearly the normal factor.
+//   - Where one line with limits (rectangular, triangular, arcsine) dominates, so
+//     that all the others together have at most 0.3 of its standard uncertainty, it
+//     is that of the convolution of all lines in their shapes (EA-4/02, S9). Two
+//     such lines of one size are left to the next rule, whose factor is a few per
+//     cent too large for them; ConvolutionFactor gives theirs.
 //   - Otherwise it is Student's t at the effective degrees of freedom (GUM G.4.1,
 //     equation G.2b, untruncated), the normal factor if they are infinite.
 //
@@ -53,22 +53,16 @@ const dominance = 0.3
 func New(lines []Line, coverage float64) Budget {
 	checkCoverage(coverage)
 	b := Budget{Lines: slices.Clone(lines), Coverage: coverage}
-	limited, rest := 0.0, 0.0 // variances
-	largest := -1             // line with limits
+	variance := 0.0
+	largest := -1 // line with limits
 	for i := range b.Lines {
 		l := &b.Lines[i]
 		l.Contribution = contribution(*l)
-		square := l.Contribution * l.Contribution
-		if !l.Shape.bounded() {
-			rest += square
-			continue
-		}
-		limited += square
-		if largest < 0 || square > math.Pow(b.Lines[largest].Contribution, 2) {
+		variance += l.Contribution * l.Contribution
+		if l.Shape.bounded() && (largest < 0 || math.Abs(l.Contribution) > math.Abs(b.Lines[largest].Contribution)) {
 			largest = i
 		}
 	}
-	variance := limited + rest
 	b.U = math.Sqrt(variance)
 	perDOF := 0.0
 	for i := range b.Lines {
@@ -82,7 +76,7 @@ func New(lines []Line, coverage float64) Budget {
 	b.DOF = 1 / perDOF
 
 	switch {
-	case variance > 0 && math.Sqrt(rest) <= dominance*math.Sqrt(limited):
+	case variance > 0 && largest >= 0 && b.dominated(largest):
 		b.K = ConvolutionFactor(lines, coverage)
 		b.Basis = fmt.Sprintf("convolution of the lines' shapes; %s, %v, is the largest",
 			b.Lines[largest].Name, b.Lines[largest].Shape)
@@ -94,6 +88,17 @@ func New(lines []Line, coverage float64) Budget {
 	}
 	b.Expanded = b.K * b.U
 	return b
+}
+
+// dominated tells whether all other lines together are small beside one.
+func (b *Budget) dominated(line int) bool {
+	rest := 0.0
+	for i := range b.Lines {
+		if i != line {
+			rest += b.Lines[i].Contribution * b.Lines[i].Contribution
+		}
+	}
+	return math.Sqrt(rest) <= dominance*math.Abs(b.Lines[line].Contribution)
 }
 
 func contribution(l Line) float64 {
