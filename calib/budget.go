@@ -3,6 +3,7 @@ package calib
 import (
 	"fmt"
 	"math"
+	"math/cmplx"
 	"sort"
 	"strings"
 
@@ -66,7 +67,7 @@ func (e *Evaluation) Budget(of string) (*Budget, error) {
 	}
 	value, lines := m.apart(s, est)
 	b := &Budget{Of: s.name, Value: value, Unit: s.unit, Budget: uncertainty.New(lines, e.Plan.Decision.Coverage)}
-	return b, e.improve(b, s)
+	return b, m.improve(b, s, est)
 }
 
 // Budgets are those of the gain (of the range with the largest U where there is
@@ -238,15 +239,10 @@ func (m *model) readingParts(by []float64) []readingPart {
 				stability.variance += k2 * gain
 			} else {
 				key := o.rng
-				if m.repeats.Basis == ScatterEnlarged {
-					key = -1
-				}
 				if repeats[key] == nil {
 					ranges = append(ranges, key)
-					repeats[key] = &readingPart{name: "scatter of the repeats", dof: o.dof}
-					if key >= 0 {
-						repeats[key].name += ", " + quantity.Plain(m.plan.Detector.Ranges[key]/m.plan.Detector.ToRMS, "V")
-					}
+					repeats[key] = &readingPart{dof: o.dof,
+						name: "scatter of the repeats, " + quantity.Plain(m.plan.Detector.Ranges[key]/m.plan.Detector.ToRMS, "V")}
 				}
 				repeats[key].variance += k2 * (averaged + gain)
 			}
@@ -294,8 +290,7 @@ const improvement = 5
 
 // improve finds, for the three largest lines, what the expanded uncertainty would
 // be if that one thing were five times better known.
-func (e *Evaluation) improve(b *Budget, s subject) error {
-	m := e.model
+func (m *model) improve(b *Budget, s subject, est *estimate) error {
 	order := make([]int, len(b.Lines))
 	for i := range order {
 		order[i] = i
@@ -307,7 +302,7 @@ func (e *Evaluation) improve(b *Budget, s subject) error {
 		if line.Share < 0.01 {
 			continue
 		}
-		after, err := m.improved(s, line.Name, k, b.Coverage)
+		after, err := m.improved(s, est, line.Name, k, b.Coverage)
 		if err != nil {
 			return err
 		}
@@ -326,14 +321,19 @@ func (m *model) inputNamed(name string) int {
 }
 
 // improved is a subject's expanded uncertainty with one input, or one cause of
-// the readings' scatter (k < 0), five times better. The model is left as it was.
-func (m *model) improved(s subject, name string, k int, coverage float64) (float64, error) {
+// the readings' scatter (k < 0), five times better. Readings and stated values are
+// those that the estimate has, lest the scatter of the real ones, now too large for
+// its uncertainty, bend the fit. The model is left as it was.
+func (m *model) improved(s subject, est *estimate, name string, k int, coverage float64) (float64, error) {
 	better := *m
 	f := *m.forward
 	b := *f.bench
 	b.inputs = append([]Input(nil), b.inputs...)
 	f.bench, better.forward = &b, &f
-	better.obs = append([]observation(nil), m.obs...)
+	better.obs = m.predicted(est)
+	for i := range b.inputs {
+		b.inputs[i].Value = est.v.nu[i]
+	}
 	if k >= 0 {
 		b.inputs[k].U /= improvement
 	} else {
@@ -341,12 +341,24 @@ func (m *model) improved(s subject, name string, k int, coverage float64) (float
 			better.obs[i].improve(name)
 		}
 	}
-	est, err := better.estimate(s.gain, s.held)
+	again, err := better.estimateFrom(s.gain, s.held, est.result.P)
 	if err != nil {
 		return 0, err
 	}
-	_, lines := better.apart(s, est)
+	_, lines := better.apart(s, again)
 	return uncertainty.New(lines, coverage).Expanded, nil
+}
+
+// predicted are the observations with the mean readings that an estimate predicts.
+func (m *model) predicted(est *estimate) []observation {
+	out := append([]observation(nil), m.obs...)
+	m.forward.compute(est.v.nu, est.v.r)
+	var r row
+	for i := range out {
+		m.predict(i, est.v, &r)
+		out[i].mean = r.value * cmplx.Conj(r.turn)
+	}
+	return out
 }
 
 // improve makes one cause of scatter five times smaller.

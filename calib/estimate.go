@@ -109,9 +109,17 @@ func (m *model) frequenciesRead() []bool {
 
 // estimate fits the model, with one gain for all, one a range or one a frequency.
 func (m *model) estimate(gain string, h held) (*estimate, error) {
+	return m.estimateFrom(gain, h, nil)
+}
+
+// estimateFrom starts the fit from given parameters, where there are any.
+func (m *model) estimateFrom(gain string, h held, from []float64) (*estimate, error) {
 	w, keys := m.arrange(gain, h)
 	e := &estimate{layout: w, keys: keys, prior: -1, gain: gain, held: h}
 	start, turns := m.start(w)
+	if from != nil {
+		start = from
+	}
 	problem := fit.Problem{Start: start}
 	for i := range m.obs {
 		if o := &m.obs[i]; !o.left {

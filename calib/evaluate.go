@@ -95,7 +95,9 @@ func (e *Evaluation) estimate() error {
 	fits := map[string]*estimate{asks: e.asked}
 	for _, gain := range []string{gainCommon, gainPerRange, gainPerFrequency} {
 		if fits[gain] == nil && (gain != gainPerFrequency || len(e.Plan.Frequencies) > 1) {
-			if fits[gain], err = m.estimate(gain, hold); err != nil {
+			// A fit that does not settle here has gains that the readings hardly
+			// determine: they are then not known, and nothing rests on them.
+			if fits[gain], err = m.estimate(gain, hold); err != nil && gain == gainCommon {
 				return err
 			}
 		}
@@ -109,24 +111,38 @@ func (e *Evaluation) estimate() error {
 	if asks == gainCommon && float64(r.ByRange.PCommon) < oneGainLevel {
 		decides = gainPerRange
 	}
-	e.deciding = fits[decides]
+	if err = e.decideBy(decides, fits[decides], hold); err != nil && decides != asks {
+		decides = asks // the gains of the ranges are too poorly known for a verdict to rest on
+		err = e.decideBy(asks, fits[asks], hold)
+	}
+	if err != nil {
+		return err
+	}
 	r.ByRange.Used = decides == gainPerRange
 	if r.ByFreq != nil {
 		r.ByFreq.Used = decides == gainPerFrequency
 	}
-	if !r.NoSignal && !e.deciding.separable() {
-		if e.deciding, err = m.estimate(decides, seriesHeld); err != nil {
-			return err
-		}
-		hold = seriesHeld
-	}
-	if hold != nothing && !r.NoSignal {
-		if e.alternate, err = m.estimate(decides, offsetHeld); err != nil {
-			return err
-		}
-	}
 	e.fitResult()
 	return nil
+}
+
+// decideBy takes a fit for errors and verdict to rest on; where it does not part
+// the offset from the series resistance, with either held at zero.
+func (e *Evaluation) decideBy(gain string, fit *estimate, hold held) (err error) {
+	e.deciding, e.alternate = fit, nil
+	if e.Result.NoSignal {
+		return nil
+	}
+	if !fit.separable() {
+		hold = seriesHeld
+		if e.deciding, err = e.model.estimate(gain, seriesHeld); err != nil {
+			return err
+		}
+	}
+	if hold != nothing {
+		e.alternate, err = e.model.estimate(gain, offsetHeld)
+	}
+	return err
 }
 
 // fitResult fills the part of the result that speaks of the fit asked for.
@@ -169,7 +185,11 @@ func (e *Evaluation) fitResult() {
 
 // gains compares the fit with several gains to the one with a common gain.
 func (m *model) gains(common, several *estimate, key func(int) KeyGain) *Gains {
-	w, unit := several.layout, offsetUnit(m.plan)
+	unit := offsetUnit(m.plan)
+	if several == nil {
+		return &Gains{PCommon: number(math.NaN()), Offset: Estimate{Unit: unit}, SeriesResistance: Estimate{Unit: "ohm"}}
+	}
+	w := several.layout
 	g := &Gains{PCommon: number(commonGain(common, several)),
 		Offset: m.value(several, w.offset, unit), SeriesResistance: m.value(several, w.series, "ohm")}
 	for k, of := range several.keys {

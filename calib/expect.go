@@ -99,10 +99,7 @@ func Expect(p *plan.Plan) (*Expectation, error) {
 	if !x.Separable {
 		hold = seriesHeld
 	}
-	byRange, err := m.estimate(gainPerRange, hold)
-	if err != nil {
-		return nil, err
-	}
+	byRange, _ := m.estimate(gainPerRange, hold) // none where the plan hardly determines them
 	x.GainByRange = m.gains(e, byRange, func(i int) KeyGain { return KeyGain{Range: p.Detector.Ranges[i]} }).Gain
 	m.expectSteps(x, e)
 	shell := &Evaluation{Plan: p, model: m, deciding: e}

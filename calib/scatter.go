@@ -92,19 +92,39 @@ func (m *model) settleScatter() {
 		return
 	}
 	m.repeats.Basis = ScatterEnlarged
+	m.enlargeScatter(ratio2, float64(dof))
+}
+
+// enlargeScatter multiplies the predicted scatter of each range by what its
+// repeats show, where that is more; by what all show where it has no repeats.
+func (m *model) enlargeScatter(all2, allDOF float64) {
+	n := len(m.plan.Detector.Ranges)
+	sum, dof := make([]float64, n), make([]float64, n)
+	for i := range m.obs {
+		o := &m.obs[i]
+		along, across := o.scatter.one()
+		sum[o.rng] += o.along2/(along*along) + o.across2/(across*across)
+		dof[o.rng] += float64(o.freedoms)
+	}
 	for i := range m.obs {
 		o := &m.obs[i]
 		s := &o.scatter
+		ratio2 := all2
+		o.dof = allDOF
+		if k := o.rng; dof[k] > 0 {
+			ratio2, o.dof = math.Max(1, sum[k]/dof[k]), dof[k]
+		}
 		if averaged := s.white + s.gain; averaged > 0 {
 			grow := (ratio2*(averaged+s.display) - s.display) / averaged
 			s.white, s.gain = s.white*grow, s.gain*grow
 		}
-		o.dof = float64(dof)
 	}
 }
 
 // observeScatter takes each range's noise from its repeats, the display's part
-// taken off, with their degrees of freedom.
+// taken off, with their degrees of freedom. Few repeats a range make the weights
+// of the fit uncertain too: with 4 degrees of freedom a range, intervals of 95 %
+// hold the truth in about 89 % (string case); with 20, in about 94 %.
 func (m *model) observeScatter() {
 	n := len(m.plan.Detector.Ranges)
 	sum, dof := make([]float64, n), make([]int, n)

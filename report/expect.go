@@ -29,6 +29,7 @@ func Expect(p *plan.Plan, x *calib.Expectation) string {
 	}
 	b.WriteByte('\n')
 	resolves(&b, p, x)
+	globalRisks(&b, p, x)
 	b.WriteString(findings(x.Findings, math.MaxInt))
 	return b.String()
 }
@@ -79,6 +80,46 @@ func resolves(b *strings.Builder, p *plan.Plan, x *calib.Expectation) {
 		fmt.Fprintf(b, "  gain of the %s range  %s\n", displayed(g.Range/p.Detector.ToRMS), u(g.Estimate))
 	}
 	b.WriteByte('\n')
+}
+
+// globalRisks are the largest risks that the rule runs with detectors of the plan's prior.
+func globalRisks(b *strings.Builder, p *plan.Plan, x *calib.Expectation) {
+	prior := p.Decision.Prior
+	if prior == nil {
+		return
+	}
+	var consumer, producer *calib.ExpectedStep
+	for i := range x.Steps {
+		s := &x.Steps[i]
+		if s.Global == nil {
+			continue
+		}
+		if consumer == nil || s.Global.Consumer > consumer.Global.Consumer {
+			consumer = s
+		}
+		if producer == nil || s.Global.Producer > producer.Global.Producer {
+			producer = s
+		}
+	}
+	if consumer == nil {
+		return
+	}
+	fmt.Fprintln(b, strings.Join(wrap("", fmt.Sprintf("Risks of the rule (%s), for detectors whose errors have a standard deviation of %s (the prior)",
+		ruleName(p), spread(prior)), "  "), "\n"))
+	fmt.Fprintf(b, "  accepted though bad (consumer's risk)   %s at most, at %s\n", probability(consumer.Global.Consumer), tail(consumer.ID, 20))
+	fmt.Fprintf(b, "  rejected though good (producer's risk)  %s at most, at %s\n\n", probability(producer.Global.Producer), tail(producer.ID, 20))
+}
+
+// spread is a prior in words.
+func spread(x *plan.Prior) string {
+	var parts []string
+	if x.Reading > 0 {
+		parts = append(parts, quantity.Share(x.Reading, 2)+" of the value applied")
+	}
+	if x.Range > 0 {
+		parts = append(parts, quantity.Share(x.Range, 2)+" of full scale")
+	}
+	return strings.Join(parts, " plus ")
 }
 
 // duration is a time for people: 1.8 s, 4 min 12 s, 1 h 5 min.

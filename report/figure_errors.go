@@ -17,7 +17,7 @@ import (
 type figureJudged struct {
 	full     float64 // V, the range
 	share, U float64
-	zone     float64 // half-width of the acceptance zone; 0 where the guard band takes all of it
+	zone     float64 // half-width of the acceptance zone; 0 where nothing can pass
 	outcome  decision.Outcome
 	beside   bool // something beside the error counts against it
 
@@ -44,7 +44,7 @@ func errorsFigure(e *calib.Evaluation) *figureSheet {
 	panel.Y.Min, panel.Y.Max = -reach, reach
 
 	outcomes := map[decision.Outcome]bool{}
-	beyond, worse := 0, 0
+	beyond, worse, nothing := 0, 0, 0
 	for _, p := range steps {
 		outcomes[p.outcome] = true
 		if math.Abs(p.share) > reach {
@@ -52,6 +52,9 @@ func errorsFigure(e *calib.Evaluation) *figureSheet {
 		}
 		if p.beside {
 			worse++
+		}
+		if p.zone == 0 {
+			nothing++
 		}
 	}
 	for o := decision.Pass; o <= decision.Fail; o++ {
@@ -99,7 +102,10 @@ func errorsFigure(e *calib.Evaluation) *figureSheet {
 	if len(steps) > figureCrowd {
 		bars = "drawn without its uncertainty, there being so many"
 	}
-	s.caption = fmt.Sprintf("Each judged step's error over its limit, %s; between the lines at ±1 it keeps to the limit, and in the shaded zone it passes with the guard band that the plan asks for.", bars)
+	s.caption = fmt.Sprintf("Each judged step's error over its limit, %s; between the lines at ±1 it keeps to the limit, and in the shaded zone it passes by the plan's rule: %s.", bars, ruleName(e.Plan))
+	if nothing > 0 {
+		s.caption += fmt.Sprintf(" %s without a zone: so uncertain that not even an error of zero passes.", figureAre(nothing, "step"))
+	}
 	if beyond > 0 {
 		s.caption += fmt.Sprintf(" An arrow stands for an error farther out than the picture reaches (%s).", figureCounted(beyond, "step"))
 	}
@@ -129,9 +135,10 @@ func figureJudgedSteps(e *calib.Evaluation) []figureJudged {
 		if r.Outcome == decision.NotJudged || !(limit > 0) || !figureFinite(p.share, p.U) {
 			continue
 		}
-		guard := e.Plan.Decision.Guard * p.U
-		p.zone = math.Max(0, 1-guard)
-		p.beside = r.Outcome > decision.Judge(p.share, 1, guard)
+		if a := float64(r.Acceptance); a > 0 && figureFinite(a) {
+			p.zone = a / limit
+		}
+		p.beside = beside(r)
 		steps = append(steps, p)
 	}
 	slices.SortStableFunc(steps, func(p, q figureJudged) int { return cmp.Compare(p.full, q.full) })

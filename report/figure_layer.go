@@ -84,7 +84,7 @@ func figureBack(a *figureArea) {
 		}
 	}
 	for _, t := range a.plot.Y.Tick.Marker.Ticks(a.plot.Y.Min, a.plot.Y.Max) {
-		if !t.IsMinor() && t.Value >= a.plot.Y.Min && t.Value <= a.plot.Y.Max {
+		if !t.IsMinor() && a.plot.Y.Tick.Length > 0 && t.Value >= a.plot.Y.Min && t.Value <= a.plot.Y.Max {
 			a.across(s, t.Value)
 		}
 	}

@@ -29,6 +29,7 @@ type figurePanel struct {
 	*plot.Plot
 	share       float64
 	title, x, y string
+	head, foot  string // lines across the whole tile, from its left edge
 }
 
 // figureKey is an entry of the key: a mark, a line, a shaded patch, or a patch with a line.
@@ -74,7 +75,7 @@ func (p *figurePanel) inside(c draw.Canvas) draw.Canvas {
 		}
 		return figureMargin
 	}
-	return draw.Crop(c, margin(p.y), 0, margin(p.x), -margin(p.title))
+	return draw.Crop(c, margin(p.y), 0, margin(p.x)+margin(p.foot), -margin(p.title)-margin(p.head))
 }
 
 // words writes them: along the axes and above, in the middle of the data area,
@@ -87,8 +88,16 @@ func (p *figurePanel) words(tile draw.Canvas, left vg.Length, handler text.Handl
 	if p.title != "" {
 		tile.FillText(style, vg.Point{X: c.X, Y: data.Max.Y + 6}, p.title)
 	}
+	bottom := tile.Min.Y + 3
+	if p.foot != "" {
+		tile.FillText(figureText(figureTickSize, xfont.WeightNormal, handler), vg.Point{X: left, Y: bottom}, p.foot)
+		bottom += figureMargin
+	}
+	if p.head != "" {
+		tile.FillText(figureText(figureLabelSize, xfont.WeightBold, handler), vg.Point{X: left, Y: tile.Max.Y - figureLabelSize}, p.head)
+	}
 	if p.x != "" {
-		tile.FillText(style, vg.Point{X: c.X, Y: tile.Min.Y + 3}, p.x)
+		tile.FillText(style, vg.Point{X: c.X, Y: bottom}, p.x)
 	}
 	if p.y != "" {
 		style.Rotation = math.Pi / 2
@@ -153,9 +162,12 @@ func (s *figureSheet) drawKeys(c draw.Canvas, handler text.Handler) vg.Length {
 	return c.Max.Y - y + 8
 }
 
+// figurePanelGap is the room between two panels.
+const figurePanelGap = 10
+
 // tiles divides the canvas among the panels so that their data areas line up.
 func (s *figureSheet) tiles(c draw.Canvas) []draw.Canvas {
-	const gap = 10
+	const gap = figurePanelGap
 	total := 0.0
 	for _, p := range s.panels {
 		total += p.share

@@ -37,7 +37,12 @@ type page struct {
 	Figures    []picture
 	Gains      []grid
 	Steps      grid
+	Decisions  grid
 	Inputs     grid
+	Budgets    []grid
+	BudgetNote string
+	MonteCarlo grid
+	Trials     string
 	Standards  grid
 	Method     []pair
 	References []string
@@ -62,11 +67,18 @@ func HTML(w io.Writer, e *calib.Evaluation, figures []Figure) error {
 		Title: e.Plan.Title, Plan: e.Plan, Result: e.Result, Source: string(e.Plan.Source),
 		Verdict: markOf(e.Result.Verdict), Decided: decided(e),
 		Identity: identity(e.Plan), Voltages: voltages(e.Plan),
-		Summary: summary(e), Gains: gainTables(e), Steps: stepTable(e), Inputs: inputTable(e), Standards: standardTable(e),
+		Summary: summary(e), Gains: gainTables(e), Steps: stepTable(e), Decisions: decisionTable(e),
+		Inputs: inputTable(e), Standards: standardTable(e), Budgets: budgetTables(e), MonteCarlo: monteCarloTable(e),
 		Method: method(e), References: references(e),
 	}
 	if p.Title == "" {
 		p.Title = "Calibration of a synchronous detector"
+	}
+	if !e.Result.Separable() {
+		p.BudgetNote = "Offset and series resistance cannot be told apart: each budget is of what it would be if the other were zero."
+	}
+	if mc := e.Result.MonteCarlo; mc != nil {
+		p.Trials = monteCarloSays(mc)
 	}
 	for _, f := range e.Result.Findings {
 		f.Text, f.Do = typeset(f.Text), typeset(f.Do)

@@ -8,6 +8,7 @@ type grid struct {
 	Notes   []string
 	Columns []column
 	Rows    int
+	Sums    int // of the rows, the last so many sum up the others
 }
 
 // column is a head and the cell that each row has under it.
@@ -18,10 +19,11 @@ type column struct {
 	Symbol func(row int) mark // in place of Cell
 }
 
-// Cells are the cells of all rows, for the template.
-func (g grid) Cells() [][]cell {
-	rows := make([][]cell, g.Rows)
+// Lines are the rows with their cells, for the template.
+func (g grid) Lines() []line {
+	rows := make([]line, g.Rows)
 	for i := range rows {
+		rows[i].Sum = i >= g.Rows-g.Sums
 		for _, c := range g.Columns {
 			x := cell{Head: c.Head, Class: c.Class}
 			if c.Symbol != nil {
@@ -30,10 +32,15 @@ func (g grid) Cells() [][]cell {
 			} else {
 				x.Text = c.Cell(i)
 			}
-			rows[i] = append(rows[i], x)
+			rows[i].Cells = append(rows[i].Cells, x)
 		}
 	}
 	return rows
+}
+
+type line struct {
+	Sum   bool
+	Cells []cell
 }
 
 type cell struct {

@@ -2,7 +2,6 @@ package report
 
 import (
 	"fmt"
-	"math"
 
 	"rungproof/calib"
 	"rungproof/calib/plan"
@@ -21,9 +20,21 @@ func method(e *calib.Evaluation) []pair {
 			"Beside it stand the fits with a gain for each range and each frequency."},
 		{"Uncertainty", fmt.Sprintf("The covariance of that one problem carries the scatter of the readings, the inputs and all correlations. "+
 			"The scatter of one reading is predicted from noise, bandwidth of the filter, resolution and short-term stability; repeats reduce all but the resolution, and their observed scatter is tested against the prediction. "+
-			"A tolerance is a rectangular distribution, with its half-width over √3 for its standard uncertainty. U = k·u for a coverage of %.4g %%: k from Student's t at the effective degrees of freedom (Welch and Satterthwaite), or, where one rectangular input dominates, from the convolution with the rest.", 100*r.Coverage)},
+			"A tolerance is a rectangular distribution, with its half-width over √3 for its standard uncertainty. U = k·u for a coverage of %.4g %%: k is Student's t at the effective degrees of freedom (the Welch–Satterthwaite formula, GUM, G.4.1), and the normal factor where these are infinite. "+
+			"Where one rectangular input is so large that all others together have at most 0.3 of its standard uncertainty, a normal distribution would give too large an interval (EA-4/02, S9): "+
+			"there k comes from the convolution of that rectangle with the rest.", 100*r.Coverage)},
 		{"Error", "A step's error is its mean reading less the reading expected there with every input at its stated value: the standards are not corrected by the instrument under test. " +
 			"The fitted series resistance is the bench's and is counted as part of what is expected."},
+	}
+	if len(r.Budgets) > 0 {
+		out = append(out, pair{"Uncertainty budgets", "Each line of a budget is one input that is independent of all others. Its contribution is its standard uncertainty times the change of the result with the input (the sensitivity); " +
+			"contributions add by their squares, and a share is one square of the sum of all. What an improvement would bring is found by doing the whole estimate again with that one standard uncertainty a fifth of what it is: " +
+			"the fit then weights the readings anew, so that it can bring more than its share."})
+	}
+	if r.MonteCarlo != nil {
+		out = append(out, pair{"Monte Carlo", "The propagation of distributions (JCGM 101): in each trial every input and every mean reading is drawn from its own distribution, a scaled and shifted t where its uncertainty has degrees of freedom, and the full estimate is made again. " +
+			"The results of all trials are the distribution of the result, whose interval needs neither linearity nor a coverage factor. The linear interval is validated to a number of digits where both of its ends agree with that of the trials within half a unit of the last of so many digits of u (clause 8). " +
+			"Offset and series resistance are also looked at together (JCGM 102): about 95 % of the trials are to lie in the ellipse that the linear covariance gives for 95 %."})
 	}
 	if len(p.Detector.Limits) > 0 {
 		out = append(out, pair{"Decision", decisionRule(p)})
@@ -44,35 +55,17 @@ func measurementModel(p *plan.Plan) string {
 	return "x = g·V·cos θ·(1 − a) + o + e. " + drop + "θ is the phase of the reference from where it was turned to maximum, and a the loss from setting that maximum with limited care."
 }
 
-// decisionRule is the plan's rule of decision.
-func decisionRule(p *plan.Plan) string {
-	g := p.Decision.Guard
-	limits := "The limit is a share of the value applied plus a share of full scale, as the plan states them. "
-	if g == 0 {
-		return limits + "Simple acceptance: a step passes where its error is within the limit and fails beyond it; the uncertainty is not taken off. " +
-			"An error at its limit has an even chance of being beyond. The verdict is the worst outcome of all steps and of the gains that are limited."
-	}
-	width := "w = U"
-	if g != 1 {
-		width = fmt.Sprintf("w = %.3g·U", g)
-	}
-	return limits + fmt.Sprintf("Guarded acceptance with %s: pass where |error| ≤ limit − w, conditional pass up to the limit, conditional fail up to limit + w, fail beyond. "+
-		"A pass is then wrong with a probability of at most %.2g %%. The verdict is the worst outcome of all steps and of the gains that are limited.",
-		width, 100*chanceOfWrongPass(g, p.Decision.Coverage))
-}
-
-// chanceOfWrongPass is the probability that the true error is outside of a limit that the
-// measured one keeps clear of by g·U, normally distributed, one-sided
-// (ILAC-G8:09/2019, its table of guard bands): U is √2·erf⁻¹(coverage) standard
-// uncertainties.
-func chanceOfWrongPass(g, coverage float64) float64 { return math.Erfc(g*math.Erfinv(coverage)) / 2 }
-
 // references are the publications that the result rests on.
 func references(e *calib.Evaluation) []string {
 	out := []string{
 		"JCGM 100:2008, Evaluation of measurement data — Guide to the expression of uncertainty in measurement",
+		"EA-4/02 M:2022, Evaluation of the uncertainty of measurement in calibration",
 		"ISO/IEC 17025:2017, General requirements for the competence of testing and calibration laboratories",
 		"S. W. Director and R. A. Rohrer, The generalized adjoint network and network sensitivities, IEEE Trans. Circuit Theory 16 (1969) 318–323",
+	}
+	if e.Result.MonteCarlo != nil {
+		out = append(out, "JCGM 101:2008, Supplement 1 to the Guide — Propagation of distributions using a Monte Carlo method",
+			"JCGM 102:2011, Supplement 2 to the Guide — Extension to any number of output quantities")
 	}
 	if len(e.Plan.Detector.Limits) > 0 {
 		out = append(out, "JCGM 106:2012, Evaluation of measurement data — The role of measurement uncertainty in conformity assessment",

@@ -61,6 +61,12 @@ func summary(e *calib.Evaluation) grid {
 			}
 			return typeset(sizeOf(lines[i].estimate))
 		}),
+		texts("k", "number", func(i int) string {
+			if !lines[i].estimate.Known {
+				return ""
+			}
+			return factor(lines[i].estimate.K)
+		}),
 		texts("U from the readings alone", "number", func(i int) string { return fromReadings(lines[i].estimate) }),
 		texts("whose", "words", func(i int) string { return lines[i].whose }),
 		texts("shown to be there", "words", func(i int) string {

@@ -51,6 +51,7 @@ func gainTable(e *calib.Evaluation, gains *calib.Gains, caption, key string, nam
 			}
 			return quantity.Share(all[i].Limit, 2)
 		}), column{Head: "outcome", Symbol: func(i int) mark { return markOf(all[i].Outcome) }})
+		g.Notes = append(g.Notes, "Judged by the rule of the steps: "+ruleName(e.Plan)+".")
 	}
 	if p := float64(gains.PCommon); !math.IsNaN(p) {
 		says := "These gains differ by no more than chance explains"

@@ -3,9 +3,11 @@ package report
 import (
 	"fmt"
 	"math"
+	"strings"
 
 	"rungproof/calib"
 	"rungproof/calib/decision"
+	"rungproof/calib/plan"
 	"rungproof/calib/quantity"
 )
 
@@ -15,17 +17,7 @@ func decided(e *calib.Evaluation) string {
 	if r.Verdict == decision.NotJudged {
 		return "The plan states no limit that holds for these steps, so nothing is judged."
 	}
-	var at *calib.StepResult
-	count := 0
-	for i := range r.Steps {
-		if s := &r.Steps[i]; s.Outcome == r.Verdict {
-			count++
-			if at == nil || shareOfLimit(s) > shareOfLimit(at) {
-				at = s
-			}
-		}
-	}
-	if at != nil {
+	if at, count := pressing(r); at != nil {
 		return typeset(bySteps(e, at, count))
 	}
 	for _, g := range r.ByRange.Gain {
@@ -36,6 +28,20 @@ func decided(e *calib.Evaluation) string {
 	}
 	return fmt.Sprintf("The steps that were read are good, but %d of %d have no reading; until they are taken the verdict is a conditional pass at best.",
 		len(r.Missing), len(e.Plan.Steps))
+}
+
+// pressing is the step that presses most on its limit of those with the verdict's
+// outcome, and how many there are; nil where there is none.
+func pressing(r *calib.Result) (at *calib.StepResult, count int) {
+	for i := range r.Steps {
+		if s := &r.Steps[i]; s.Outcome == r.Verdict && s.Outcome != decision.NotJudged {
+			count++
+			if at == nil || shareOfLimit(s) > shareOfLimit(at) {
+				at = s
+			}
+		}
+	}
+	return at, count
 }
 
 // shareOfLimit is the share of its limit that a step's error takes, or the phase where that takes more.
@@ -49,12 +55,7 @@ func shareOfLimit(s *calib.StepResult) float64 {
 
 // bySteps says how many steps have the verdict's outcome, which of them presses most, and why.
 func bySteps(e *calib.Evaluation, at *calib.StepResult, count int) string {
-	guarded := e.Plan.Decision.Guard > 0
-	say := map[bool]map[decision.Outcome]string{
-		true: {decision.Pass: "within its limit with the whole guard band to spare", decision.ConditionalPass: "within its limit, but by less than the guard band",
-			decision.ConditionalFail: "beyond its limit, but by less than the guard band", decision.Fail: "beyond its limit by more than the guard band"},
-		false: {decision.Pass: "within its limit", decision.Fail: "beyond its limit"},
-	}[guarded][at.Outcome]
+	say := placeOf(e.Plan, at.Outcome)
 	if why := whyConditional(e, at); why != "" {
 		say = why
 	}
@@ -77,6 +78,24 @@ func bySteps(e *calib.Evaluation, at *calib.StepResult, count int) string {
 		say += fmt.Sprintf(" Of the plan's %d steps, %d have no reading.", len(e.Plan.Steps), m)
 	}
 	return say
+}
+
+// placeOf says where an error lies that has an outcome by itself.
+func placeOf(p *plan.Plan, o decision.Outcome) string {
+	say := map[decision.Outcome]string{decision.Pass: "with the whole guard band to spare", decision.ConditionalPass: "but by less than the guard band",
+		decision.ConditionalFail: "but by less than the guard band", decision.Fail: "by more than the guard band"}
+	if p.Decision.Rule == "risk" {
+		say = map[decision.Outcome]string{decision.Pass: "with no more risk than the plan allows", decision.ConditionalPass: "but with more risk of being beyond than the plan allows",
+			decision.ConditionalFail: "but it may well be within", decision.Fail: "with little risk of being within"}
+	}
+	side := "within its limit"
+	if o == decision.ConditionalFail || o == decision.Fail {
+		side = "beyond its limit"
+	}
+	if simpleRule(p) {
+		return side
+	}
+	return strings.Replace(side+" "+say[o], " but", ", but", 1)
 }
 
 // errorAtLimit is a step's error, or its phase where that is nearer to its limit.

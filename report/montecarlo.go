@@ -5,6 +5,7 @@ import (
 	"strings"
 
 	"rungproof/calib"
+	"rungproof/calib/uncertainty"
 )
 
 // confirmed says in the summary what Monte Carlo found.
@@ -13,8 +14,12 @@ func confirmed(b *strings.Builder, mc *calib.MonteCarlo) {
 		return
 	}
 	fmt.Fprintln(b, strings.Join(wrap("Monte Carlo: ", monteCarloSays(mc), "  "), "\n"))
-	for _, o := range mc.Outputs {
-		fmt.Fprintln(b, columnsOf([]string{"  " + o.Name, monteCarloValue(&o), monteCarloInterval(&o)}, 22, 28))
+	for i, o := range mc.Outputs {
+		if i == mostRanges && len(mc.Outputs) > mostRanges+1 {
+			fmt.Fprintf(b, "  and %d more results: see the report (--out) or --json\n", len(mc.Outputs)-i)
+			break
+		}
+		fmt.Fprintln(b, columnsOf([]string{"  " + fit(o.Name, 20), monteCarloValue(&o), monteCarloInterval(&o, o.Symmetric)}, 23, 22))
 	}
 	b.WriteByte('\n')
 }
@@ -41,7 +46,7 @@ func monteCarloSays(mc *calib.MonteCarlo) string {
 			not = append(not, o.Name)
 		}
 	}
-	return text + "The linear interval is not validated (JCGM 101, clause 8) for " + strings.Join(not, ", ") + "; take the ones below."
+	return text + "The linear interval is not validated (JCGM 101, clause 8) for " + calib.List(not) + "; take the ones below."
 }
 
 // monteCarloValue is the mean with the standard uncertainty, both of the trials.
@@ -53,13 +58,12 @@ func monteCarloValue(o *calib.MonteCarloOutput) string {
 	return concise(mean, o.U, o.Unit)
 }
 
-// monteCarloInterval is the probabilistically symmetric interval.
-func monteCarloInterval(o *calib.MonteCarloOutput) string {
-	low, high := o.Symmetric.Low, o.Symmetric.High
+// monteCarloInterval is an interval of the trials.
+func monteCarloInterval(o *calib.MonteCarloOutput, i uncertainty.Interval) string {
 	if isGain(o) {
-		low, high = low-1, high-1
+		i.Low, i.High = i.Low-1, i.High-1
 	}
-	return interval(low, high, o.U, o.Unit)
+	return interval(i.Low, i.High, o.U, o.Unit)
 }
 
 // isGain tells whether an output is a gain, which is written as its deviation from 1.

@@ -105,6 +105,8 @@ func scaleOf(size float64, unit string) (float64, string) {
 		return 1e-6, "ppm"
 	case unit == "1":
 		return 0.01, "%"
+	case unit == "1/K":
+		return 1e-6, "ppm/K"
 	case unit == "ohm":
 		unit = "Ω"
 	}
