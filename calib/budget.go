@@ -1,6 +1,7 @@
 package calib
 
 import (
+	"encoding/json"
 	"fmt"
 	"math"
 	"math/cmplx"
@@ -14,11 +15,47 @@ import (
 
 // Budget is where the uncertainty of one result comes from, and what to improve first.
 type Budget struct {
-	Of    string  `json:"of"`
-	Value float64 `json:"value"`
-	Unit  string  `json:"unit"` // "1", "V" or "ohm"
+	Of    string
+	Value float64
+	Unit  string // "1", "V" or "ohm"
 	uncertainty.Budget
-	Improve []Improvement `json:"improve_first"`
+	Improve []Improvement
+}
+
+// MarshalJSON writes the budget flat, infinite degrees of freedom as null.
+func (b *Budget) MarshalJSON() ([]byte, error) {
+	type line struct {
+		Name         string  `json:"name"`
+		Value        float64 `json:"value"`
+		U            float64 `json:"u"`
+		Unit         string  `json:"unit"`
+		Shape        string  `json:"distribution"`
+		DOF          number  `json:"dof"`
+		Sensitivity  float64 `json:"sensitivity"`
+		Contribution float64 `json:"contribution"`
+		Share        float64 `json:"share_of_variance"`
+	}
+	lines := make([]line, len(b.Lines))
+	for i, l := range b.Lines {
+		dof := number(l.DOF)
+		if l.DOF == 0 {
+			dof = number(math.Inf(1))
+		}
+		lines[i] = line{l.Name, l.Value, l.U, l.Unit, l.Shape.String(), dof, l.Sensitivity, l.Contribution, l.Share}
+	}
+	return json.Marshal(struct {
+		Of       string        `json:"of"`
+		Value    float64       `json:"value"`
+		Unit     string        `json:"unit"`
+		U        float64       `json:"u"`
+		DOF      number        `json:"effective_dof"`
+		Coverage float64       `json:"coverage"`
+		K        float64       `json:"k"`
+		Expanded float64       `json:"U"`
+		Basis    string        `json:"k_from"`
+		Lines    []line        `json:"lines"`
+		Improve  []Improvement `json:"improve_first"`
+	}{b.Of, b.Value, b.Unit, b.U, number(b.DOF), b.Coverage, b.K, b.Expanded, b.Basis, lines, b.Improve})
 }
 
 // Improvement is what the expanded uncertainty would be if one thing were better

@@ -3,7 +3,10 @@ package uncertainty
 import "math"
 
 // Interval from Low to High, unit of the quantity.
-type Interval struct{ Low, High float64 }
+type Interval struct {
+	Low  float64 `json:"low"`
+	High float64 `json:"high"`
+}
 
 // Summary of the values that the trials of a Monte Carlo calculation gave.
 type Summary struct {

@@ -68,10 +68,10 @@ or the usage.`,
 		},
 	}
 	c.Flags().StringVar(&out, "out", "", "write result.json, report.html and .txt, and figures to `DIR`")
-	c.Flags().BoolVar(&asJSON, "json", false, "write the content of result.json instead of the summary")
-	c.Flags().StringVar(&monteCarlo, "monte-carlo", "", "confirm by so many trials, `N` or auto (1000000 where neither is said)")
+	c.Flags().BoolVar(&asJSON, "json", false, "write what result.json holds, not the summary")
+	c.Flags().StringVar(&monteCarlo, "monte-carlo", "", "confirm by `N` trials, or auto")
 	c.Flags().Lookup("monte-carlo").NoOptDefVal = strconv.Itoa(defaultTrials)
-	c.Flags().Uint64Var(&seed, "seed", 1, "of --monte-carlo: the same seed gives the same result")
+	c.Flags().Uint64Var(&seed, "seed", 1, "of chance in --monte-carlo")
 	return c
 }
 
