@@ -67,8 +67,8 @@ or the usage.`,
 			return err
 		},
 	}
-	c.Flags().StringVar(&out, "out", "", "write result.json, report.html and .txt, and figures to `DIR`")
-	c.Flags().BoolVar(&asJSON, "json", false, "write what result.json holds, not the summary")
+	c.Flags().StringVar(&out, "out", "", "write report and figures to `DIR`")
+	c.Flags().BoolVar(&asJSON, "json", false, "print result.json, not the summary")
 	c.Flags().StringVar(&monteCarlo, "monte-carlo", "", "confirm by `N` trials, or auto")
 	c.Flags().Lookup("monte-carlo").NoOptDefVal = strconv.Itoa(defaultTrials)
 	c.Flags().Uint64Var(&seed, "seed", 1, "of chance in --monte-carlo")
