@@ -20,6 +20,7 @@ type Expectation struct {
 	SeriesResistance Estimate          `json:"series_resistance"`
 	Correlation      map[string]number `json:"correlation"`
 	GainByRange      []KeyGain         `json:"gain_by_range"`
+	Detectable       Detectable        `json:"detectable"`
 	Parting          *Parting          `json:"parting,omitempty"` // not separable: the cheapest step that parts the two
 	BenchTime        float64           `json:"bench_time"`        // s, without the time to change settings
 	CoverageFactor   float64           `json:"coverage_factor"`
@@ -76,11 +77,9 @@ func Expect(p *plan.Plan) (*Expectation, error) {
 	if err != nil {
 		return nil, err
 	}
-	w, unit := e.layout, offsetUnit(p)
-	x.Gain, x.Offset, x.SeriesResistance = Estimate{Unit: "1"}, Estimate{Unit: unit}, Estimate{Unit: "ohm"}
+	w := e.layout
 	x.Correlation = map[string]number{}
 	if x.Separable = e.separable(); x.Separable {
-		x.Offset, x.SeriesResistance = m.value(e, w.offset, unit), m.value(e, w.series, "ohm")
 		x.Correlation["offset,series_resistance"] = number(e.correlation(w.offset, w.series))
 	} else {
 		x.Parting = Part(p)
@@ -88,12 +87,11 @@ func Expect(p *plan.Plan) (*Expectation, error) {
 			return nil, err
 		}
 	}
-	if w := e.layout; w.gains == 1 {
-		x.Gain = m.value(e, 0, "1")
-		if x.Separable {
-			x.Correlation["gain,offset"] = number(e.correlation(0, w.offset))
-			x.Correlation["gain,series_resistance"] = number(e.correlation(0, w.series))
-		}
+	x.Gain, x.Offset, x.SeriesResistance = m.threeOf(e)
+	x.Detectable = detectable(x.Gain, x.Offset, x.SeriesResistance)
+	if w.gains == 1 && x.Separable {
+		x.Correlation["gain,offset"] = number(e.correlation(0, w.offset))
+		x.Correlation["gain,series_resistance"] = number(e.correlation(0, w.series))
 	}
 	hold := nothing
 	if !x.Separable {

@@ -202,6 +202,24 @@ type Finding struct {
 	Kind string `json:"kind"`
 	Text string `json:"text"`
 	Do   string `json:"do,omitempty"` // what to do about it
+
+	Evidence *Evidence `json:"evidence,omitempty"` // of a cause that the readings show
+}
+
+// Evidence is how sure a cause is.
+type Evidence struct {
+	Cause      string   `json:"cause"`
+	Variant    string   `json:"variant,omitempty"`
+	Whose      string   `json:"whose"`
+	Size       float64  `json:"size"`
+	Expanded   float64  `json:"U"`
+	Unit       string   `json:"unit"`
+	Share      float64  `json:"share_of_deviation"` // of the clean hypothesis' χ² that it accounts for
+	Fall       float64  `json:"fall_of_chi_squared"`
+	P          float64  `json:"p"` // probability of as much by chance, over all variants tried
+	Strength   string   `json:"strength"`
+	Contradict []string `json:"contradicted_by,omitempty"`
+	Decides    string   `json:"decided_by"`
 }
 
 // Repeatability compares the scatter of repeated readings with the predicted

@@ -4,7 +4,9 @@ import (
 	"math"
 	"math/cmplx"
 	"math/rand/v2"
+	"time"
 
+	"rungproof/calib/detector"
 	"rungproof/calib/plan"
 	"rungproof/calib/reading"
 )
@@ -19,6 +21,25 @@ type Truth struct {
 	Series    float64         // Ω
 	Phase     float64         // rad, two-phase: the reference's phase
 	Fine      bool            // the display rounds nothing
+
+	Added        []Added // further terms of the model
+	Interference float64 // V rms, of further white scatter on each reading
+	Lean         float64 // share of the step before that is left in a step's first reading
+}
+
+// Added is a term of the model at some size: what a fault does to the mean readings.
+type Added struct {
+	Term Term
+	Size float64
+}
+
+// extra is what the added terms make of one observation.
+func (t *Truth) extra(i int) complex128 {
+	sum := complex128(0)
+	for _, a := range t.Added {
+		sum += a.Term[i] * complex(a.Size, 0)
+	}
+	return sum
 }
 
 // Simulator draws readings as the bench of a plan would have given them.
@@ -49,11 +70,17 @@ func (s *Simulator) Readings(t Truth, random *rand.Rand) *reading.Set {
 	m.forward.compute(nu, t.Series)
 	set := &reading.Set{File: "simulated"}
 	s.errors = s.errors[:0]
+	clock, before := simulationStart, complex128(0)
 	for i := range m.obs {
 		o := &m.obs[i]
 		s.errors = append(s.errors, m.trueError(i, nu, &t))
-		for range m.plan.Steps[o.step].Repeats {
+		still := m.still(i, nu, &t)
+		for k := range m.plan.Steps[o.step].Repeats {
 			z := m.one(i, nu, &t, random)
+			if k == 0 && i > 0 && t.Lean != 0 {
+				z += complex(t.Lean, 0) * (before - still)
+			}
+			clock = clock.Add(time.Duration(1e9 * detector.Settling(m.plan.Steps[o.step].TimeConstant, m.plan.Detector.Poles, settled)))
 			if m.plan.Detector.Reads == plan.Magnitude {
 				z = complex(cmplx.Abs(z), 0)
 			}
@@ -63,8 +90,9 @@ func (s *Simulator) Readings(t Truth, random *rand.Rand) *reading.Set {
 			if display := m.plan.Detector.Resolution * m.plan.Detector.Ranges[o.rng]; display > 0 && !t.Fine {
 				z = complex(math.Round(real(z)/display)*display, math.Round(imag(z)/display)*display)
 			}
-			set.Readings = append(set.Readings, reading.Reading{Step: o.step, X: real(z), Y: imag(z), Range: o.rng})
+			set.Readings = append(set.Readings, reading.Reading{Step: o.step, X: real(z), Y: imag(z), Range: o.rng, Time: clock.Truncate(time.Second)})
 		}
+		before = still
 	}
 	return set
 }
@@ -75,7 +103,8 @@ func (m *model) one(i int, nu []float64, t *Truth, random *rand.Rand) complex128
 	step := &m.plan.Steps[o.step]
 	d := &m.forward.drops[m.forward.of[o.step]]
 	g, offset := t.at(m, o.rng)
-	noise := complex(o.noise*random.NormFloat64(), o.noise*random.NormFloat64())
+	spread := math.Hypot(o.noise, t.Interference)
+	noise := complex(spread*random.NormFloat64(), spread*random.NormFloat64()) + t.extra(i)
 	scatter := m.plan.Detector.Stability * random.NormFloat64()
 	size, _ := d.size()
 	switch m.plan.Detector.Reads {
@@ -85,6 +114,25 @@ func (m *model) one(i int, nu []float64, t *Truth, random *rand.Rand) complex128
 		return complex(g*size*(1+scatter), 0) + offset + noise
 	}
 	return complex(g*size*m.cosineOf(o, nu)+scatter*d.stated, 0) + offset + noise
+}
+
+// simulationStart is when simulated readings begin.
+var simulationStart = time.Date(2026, 1, 5, 9, 0, 0, 0, time.UTC)
+
+// still is a reading without noise, before the display.
+func (m *model) still(i int, nu []float64, t *Truth) complex128 {
+	o := &m.obs[i]
+	step := &m.plan.Steps[o.step]
+	d := &m.forward.drops[m.forward.of[o.step]]
+	g, offset := t.at(m, o.rng)
+	size, _ := d.size()
+	switch m.plan.Detector.Reads {
+	case plan.TwoPhase:
+		return complex(g, 0)*d.V*cmplx.Rect(1, t.Phase-step.Phase) + offset + t.extra(i)
+	case plan.Magnitude:
+		return complex(g*size, 0) + offset + t.extra(i)
+	}
+	return complex(g*size*m.cosineOf(o, nu)+real(offset), 0) + t.extra(i)
 }
 
 // trueError is what a step's reading would be without noise, less the voltage

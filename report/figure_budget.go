@@ -67,7 +67,7 @@ func budgetFigure(e *calib.Evaluation) *figureSheet {
 		panel.head = figureMinus(firstUpper(budgetResult(shown[i]))) + ", k = " + factor(shown[i].K)
 		panel.share = float64(row)*float64(len(bars)) + figureMargin
 		if improve := shown[i].Improve; len(improve) > 0 {
-			panel.foot = fit(improve[0].Name, 40) + " five times better known: " + expandedAfter(shown[i], improve[0])
+			panel.foot = fit(improve[0].Name, figureNameWidth) + " five times better known: " + expandedAfter(shown[i], improve[0])
 			panel.share += figureMargin
 		}
 		if i == len(all)-1 {

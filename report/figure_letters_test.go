@@ -40,7 +40,7 @@ func TestFiguresWriteOnlyWhatTheirFontsHave(t *testing.T) {
 	listener := &figureListener{Handler: plot.DefaultTextHandler, words: map[xfont.Weight]map[string]bool{}}
 	var evaluations []*calib.Evaluation
 	for _, name := range figureCases {
-		evaluations = append(evaluations, figureCase(t, name))
+		evaluations = append(evaluations, withBudgets(t, figureCase(t, name)))
 	}
 	perRange := figureSource(t, "arrival", "[decision]", "[fit]\noffset = \"share of range\"\n[decision]")
 	evaluations = append(evaluations, figureEvaluation(t, perRange, figureRead(t, "arrival")), figureMany(t, 12))

@@ -83,7 +83,7 @@ func figurePixels(t testing.TB, b []byte) image.Image {
 
 // The golden pictures were looked at by a person; every pixel must stay.
 func TestFiguresOfArrivalAreAsLookedAt(t *testing.T) {
-	for _, f := range figuresOf(t, figureCase(t, "arrival")) {
+	for _, f := range figuresOf(t, withBudgets(t, figureCase(t, "arrival"))) {
 		file := filepath.Join("testdata", "figures", "arrival-"+f.Name)
 		if *figuresUpdate {
 			if err := os.MkdirAll(filepath.Dir(file), 0o777); err != nil {

@@ -113,7 +113,7 @@ func TestHTMLHasEverySectionInOrder(t *testing.T) {
 	for _, name := range htmlCases {
 		page, e := htmlPage(t, name), htmlCase(t, name)
 		at := 0
-		for _, id := range []string{"identity", "summary", "findings", "figures", "gains", "steps", "inputs", "standards", "method", "cautions", "plan", "origin"} {
+		for _, id := range []string{"identity", "summary", "findings", "figures", "gains", "steps", "decisions", "inputs", "standards", "method", "cautions", "plan", "origin"} {
 			i := strings.Index(page[at:], `<section id="`+id+`"`)
 			if i < 0 {
 				t.Fatalf("%s: section %s is missing or out of order", name, id)
@@ -126,7 +126,7 @@ func TestHTMLHasEverySectionInOrder(t *testing.T) {
 			}
 		}
 		for _, text := range []string{e.Plan.Title, e.Plan.Detector.Serial, e.Result.PlanSHA256, e.Result.ReadingsSHA256,
-			"rungproof of a test", "Never lift a protective earth", "local codes", "k = 1.960", "JCGM 100:2008", "ISO/IEC 17025:2017", "ILAC-G8:09/2019"} {
+			"rungproof of a test", "Never lift a protective earth", "local codes", "<th scope=\"col\" class=\"number\">k</th>", "JCGM 100:2008", "ISO/IEC 17025:2017", "ILAC-G8:09/2019"} {
 			if !strings.Contains(page, text) {
 				t.Errorf("%s: %q is not on the page", name, text)
 			}
@@ -290,7 +290,7 @@ func TestHTMLShortensManySteps(t *testing.T) {
 	if !strings.Contains(page, "Shown are 400 of 440 steps") {
 		t.Error("the page does not say that it leaves steps out")
 	}
-	steps := page[strings.Index(page, `id="steps"`):strings.Index(page, `id="inputs"`)]
+	steps := page[strings.Index(page, `id="steps"`):strings.Index(page, `id="decisions"`)]
 	if n := strings.Count(steps, `<th scope="row"`); n != 400 {
 		t.Errorf("%d steps listed, not 400", n)
 	}

@@ -38,6 +38,9 @@ func monteCarloTable(e *calib.Evaluation) grid {
 			return fmt.Sprint(all[i].Validated)
 		}),
 	}}
+	if !e.Result.Separable() {
+		g.Notes = append(g.Notes, "Offset and series resistance cannot be told apart: the offset is what it would be if there were no unknown series resistance.")
+	}
 	if note := togetherSays(e); note != "" {
 		g.Notes = append(g.Notes, typeset(note))
 	}

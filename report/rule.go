@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"math"
+	"strings"
 
 	"rungproof/calib"
 	"rungproof/calib/decision"
@@ -112,4 +113,37 @@ func capability(x float64) string {
 		return "over 1000"
 	}
 	return quantity.Format(x, 2, "1")
+}
+
+// deciding is the rule, and how the step that presses most on its limit stands by it.
+func deciding(b *strings.Builder, e *calib.Evaluation) {
+	if at, _ := pressing(e.Result); at != nil {
+		say := ruleName(e.Plan) + "."
+		if !math.IsNaN(float64(at.Limit)) {
+			accepted := "accepted up to " + acceptedUpTo(at)
+			if math.IsNaN(float64(at.Acceptance)) {
+				accepted = "no error accepted"
+			}
+			say += fmt.Sprintf(" At %s: %s, conformity %s", tail(at.ID, 20), accepted, probability(float64(at.Conformity)))
+			if risk := riskOf(at); risk != "" {
+				say += ", risk of the outcome " + risk
+			}
+			say += "."
+		}
+		if least := leastCapable(e.Result.Steps); least != nil {
+			say += fmt.Sprintf(" Limit/U %s at least.", capability(float64(least.Capability)))
+		}
+		fmt.Fprintln(b, strings.Join(wrap("Rule: ", say, "  "), "\n"))
+	}
+	b.WriteByte('\n')
+}
+
+// leastCapable is the step with the least limit over U; nil where none is limited.
+func leastCapable(all []calib.StepResult) (least *calib.StepResult) {
+	for i := range all {
+		if c := float64(all[i].Capability); !math.IsNaN(c) && (least == nil || c < float64(least.Capability)) {
+			least = &all[i]
+		}
+	}
+	return least
 }

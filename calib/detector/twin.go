@@ -10,7 +10,7 @@ type TwinSettings struct {
 
 	TimeConstant float64    // of each low-pass pole, s
 	Poles        int        // 1 to MaxPoles
-	Before       complex128 // what the filter had settled to before the step, x + jy, V rms
+	Before       complex128 // what the filter had settled to before the step, x + jy, V rms without gain and offset
 
 	Clip       float64 // the input is cut at ±Clip, V of the moment, not rms; 0: nowhere
 	Gain       float64 // by which what the filter lets through is read; not 0

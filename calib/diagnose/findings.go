@@ -22,6 +22,7 @@ const (
 	Offset         = "offset"
 	Series         = "series resistance"
 	Gain           = "gain"
+	Convention     = "amplitude convention"
 	RangeGain      = "gain by range"
 	Misfit         = "misfit"
 	Scatter        = "scatter"
@@ -40,7 +41,7 @@ const level = 0.01
 func Findings(e *calib.Evaluation) []calib.Finding {
 	out := []calib.Finding{} // [] in JSON, not null
 	for _, find := range []func(*calib.Evaluation) []calib.Finding{
-		noSignal, beyondLimit, odd, notSeparable, rangeGain, gain, offset, series, scatter, misfit, lists, lapsed, limited,
+		noSignal, notSeparable, shown, scatter, beyondLimit, odd, lists, lapsed, limited,
 	} {
 		out = append(out, find(e)...)
 	}
@@ -51,18 +52,17 @@ func one(kind, do, format string, args ...any) []calib.Finding {
 	return []calib.Finding{{Kind: kind, Text: fmt.Sprintf(format, args...), Do: do}}
 }
 
-// found is a parameter's size with U where it exceeds U.
-func found(e *calib.Evaluation, x calib.Estimate, from float64) bool {
-	return x.Known && math.Abs(x.Value-from) > x.Expanded()
-}
-
-func size(e *calib.Evaluation, x calib.Estimate) string {
+// size is an estimate with its expanded uncertainty; a share in percent or ppm, an
+// angle in degrees.
+func size(x calib.Estimate) string {
 	U := x.Expanded()
 	switch x.Unit {
 	case "1":
 		return quantity.SharePlusMinus(x.Value, U)
 	case "ohm":
 		return quantity.PlusMinus(x.Value, U, "Ω")
+	case "rad":
+		return quantity.PlusMinus(x.Value*180/math.Pi, U*180/math.Pi, "1") + "°"
 	}
 	return quantity.PlusMinus(x.Value, U, x.Unit)
 }
@@ -109,7 +109,7 @@ func notSeparable(e *calib.Evaluation) []calib.Finding {
 	text := "these readings cannot tell an offset of the detector from a series resistance of the bench"
 	if f.Intercept.Known && f.AsSeries.Known {
 		text += fmt.Sprintf(": together they are worth %s as an offset, or %s as a resistance in series with %s",
-			size(e, *f.Intercept), size(e, *f.AsSeries), seriesArm(e.Plan))
+			size(*f.Intercept), size(*f.AsSeries), seriesArm(e.Plan))
 	}
 	text += "."
 	if c := e.Result.Condition; c != nil {
@@ -186,23 +186,6 @@ func oddOnes(e *calib.Evaluation, gains []calib.KeyGain) []int {
 	return odd
 }
 
-func gain(e *calib.Evaluation) []calib.Finding {
-	g := e.Result.Fit.Gain
-	if e.Result.ByRange.Used || !found(e, g, 1) {
-		return nil
-	}
-	deviation := g
-	deviation.Value--
-	do := "correct the readings by it, or have the detector adjusted."
-	if share := shareOfLimits(e, func(s *calib.StepResult) float64 { return deviation.Value * s.Expected }); share < small {
-		do = within(share)
-	}
-	if name := convention(g.Value); name != "" {
-		do = "check the amplitude's convention first: this ratio is " + name + "."
-	}
-	return one(Gain, do, "the gain is off by %s. It is the detector's, as far as the generator's amplitude and the ladder are as the plan states them.", size(e, deviation))
-}
-
 // convention names the slip of amplitude convention that a gain is near to.
 func convention(g float64) string {
 	for _, c := range []struct {
@@ -224,38 +207,6 @@ func convention(g float64) string {
 	return ""
 }
 
-func offset(e *calib.Evaluation) []calib.Finding {
-	var out []calib.Finding
-	if o, _ := e.Result.Deciding(); found(e, o, 0) {
-		do := "zero the detector's output with the input shorted, or correct the readings by it."
-		if share := shareOfLimits(e, func(s *calib.StepResult) float64 { return offsetAt(e, s) }); share < small {
-			do = within(share)
-		}
-		out = one(Offset, do,
-			"the detector adds %s to every reading, whatever the signal: the same at every amplitude and at either reference phase. It is the detector's.", size(e, o))
-	}
-	if y := e.Result.Fit.OffsetQuadrature; y != nil && found(e, *y, 0) {
-		out = append(out, one(Offset, "zero the detector's quadrature output.", "the detector adds %s to every quadrature reading.", size(e, *y))...)
-	}
-	return out
-}
-
-func series(e *calib.Evaluation) []calib.Finding {
-	_, r := e.Result.Deciding()
-	from := 0.0
-	if x := e.Plan.Fit.SeriesExpected; x != nil {
-		from = x.X
-	}
-	if !found(e, r, from) {
-		return nil
-	}
-	text := "there is %s in series with %s beyond the wiring that the plan states: it grows with the current and stays with the ladder. It is the bench's, and is not counted against the detector."
-	if r.Value < 0 {
-		text = "there is %s in series with %s against the wiring that the plan states: less than stated. It is the bench's, and is not counted against the detector."
-	}
-	return one(Series, "look for a lead or contact inside the detector's taps; shorten it, clean it, or state it as a [[wire]].", text, size(e, r), seriesArm(e.Plan))
-}
-
 func scatter(e *calib.Evaluation) []calib.Finding {
 	r := e.Result.Repeatability
 	if !(float64(r.P) < level) {
@@ -268,20 +219,3 @@ func scatter(e *calib.Evaluation) []calib.Finding {
 
 // EarthCaution goes with every suspicion of an earth loop.
 const EarthCaution = "Never lift a protective earth to break an earth loop: use a floating or differential input, an isolating transformer made for it, or battery equipment, by your local codes and licensed practice."
-
-func misfit(e *calib.Evaluation) []calib.Finding {
-	f := &e.Result.Fit
-	p := float64(f.P)
-	if g := e.Result.ByRange; g.Used || !(p < level) {
-		return nil
-	}
-	worst, at := 0.0, ""
-	for _, s := range e.Result.Steps {
-		if z := math.Abs(float64(s.Standardised)); z > worst {
-			worst, at = z, s.ID
-		}
-	}
-	return one(Misfit, "look at that step's settings first, then at the uncertainties that the plan states.",
-		"the readings do not fit the model as well as their uncertainties say (χ² = %.4g with %d degrees of freedom, %s); the farthest is step %s.",
-		float64(f.ChiSquared), f.DOF, probability(p), at)
-}

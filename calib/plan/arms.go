@@ -143,24 +143,30 @@ func (d *decoder) measuredSettings(a *openArm, n *node) {
 
 // armSetting is the index in an open arm's Settings of a value that a step sets.
 func (d *decoder) armSetting(arm int, n *node) (i int, ok bool) {
-	a, open := &d.plan.Arms[arm], d.bench.open[arm]
-	q, _, ok := d.stated(n, quantity.Resistance, notNegative)
+	a := &d.plan.Arms[arm]
+	stated, q, ok := d.resistor(arm, n)
 	if !ok {
 		return 0, false
 	}
-	i, fresh := open.nominal.of(q.X)
-	own := q.Uncertainty
-	q.Uncertainty = own.over(open.uncertainty)
-	if k, ok := open.measuredAt.find(q.X); ok {
-		measured := open.measured[k]
-		q = Quantity{measured.X, measured.over(q.Uncertainty)}
-	}
+	i, fresh := d.bench.open[arm].nominal.of(stated.X)
 	switch {
 	case fresh:
 		a.Settings = append(a.Settings, q)
 		a.Nominal = append(a.Nominal, nominalText(n))
-	case own != unstated && a.Settings[i] != q:
+	case stated.Uncertainty != unstated && a.Settings[i] != q:
 		d.fault(n, "%s is set before with another uncertainty or history, as %q; state it once", n.what(), a.Nominal[i])
 	}
 	return i, true
+}
+
+// resistor is the resistor that an open arm has at a setting, and the setting itself as it is stated.
+func (d *decoder) resistor(arm int, n *node) (stated, q Quantity, ok bool) {
+	open := d.bench.open[arm]
+	stated, _, ok = d.stated(n, quantity.Resistance, notNegative)
+	q = Quantity{stated.X, stated.over(open.uncertainty)}
+	if k, found := open.measuredAt.find(stated.X); found {
+		measured := open.measured[k]
+		q = Quantity{measured.X, measured.over(q.Uncertainty)}
+	}
+	return stated, q, ok
 }

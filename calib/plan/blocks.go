@@ -145,7 +145,7 @@ func (d *decoder) settings(t *table) [][]int {
 			d.missing(t.node, "set", "the block does not set %q, which has no value of its own; add set = { %s = \"1 kΩ\" }", name, tomlKey(name))
 		case n == nil:
 		case !open:
-			d.fault(n, "%q has a value, or is a joint, and cannot be set; only an arm without value can", name)
+			d.notOpen(n)
 		default:
 			settings[i] = nil
 			for _, n := range d.list(n) {
@@ -155,10 +155,20 @@ func (d *decoder) settings(t *table) [][]int {
 			}
 		}
 	}
-	for _, key := range set.node.keys {
-		d.refer(&node{kind: unstable.String, text: key, line: set.node.fields[key].line, key: key, parent: set.node}, "arm", d.bench.arms)
-	}
+	d.knownArms(set)
 	return settings
+}
+
+// notOpen reports an arm that the steps cannot set.
+func (d *decoder) notOpen(n *node) {
+	d.fault(n, "%q has a value, or is a joint, and cannot be set; only an arm without value can", n.key)
+}
+
+// knownArms reports the keys of a table that are no arms.
+func (d *decoder) knownArms(t *table) {
+	for _, key := range t.node.keys {
+		d.refer(&node{kind: unstable.String, text: key, line: t.node.fields[key].line, key: key, parent: t.node}, "arm", d.bench.arms)
+	}
 }
 
 // tomlKey is a name as a key, in quotes where TOML wants them.

@@ -28,17 +28,25 @@ func (d *decoder) fit(top *table) {
 
 // checkTapsHaveElements reports the first joint that is tapped where the tapped arm is to hold the series resistance.
 func (d *decoder) checkTapsHaveElements() {
-	for _, b := range d.blocksRead {
-		for i, arm := range b.taps {
-			a := &d.plan.Arms[arm]
-			if a.Place != Tap {
-				continue
-			}
-			d.fault(b.tapNodes[i], "%q is a joint without an element, so the unknown series resistance cannot be in the tapped arm", a.Name)
-			d.hint("say which arm it is in: series_resistance_in = %q in [fit]", d.lastShunt())
+	for i := range d.blocksRead {
+		if d.tapsJoint(&d.blocksRead[i]) {
 			return
 		}
 	}
+}
+
+// tapsJoint reports the first joint that a block taps.
+func (d *decoder) tapsJoint(b *block) bool {
+	for i, arm := range b.taps {
+		a := &d.plan.Arms[arm]
+		if a.Place != Tap {
+			continue
+		}
+		d.fault(b.tapNodes[i], "%q is a joint without an element, so the unknown series resistance cannot be in the tapped arm", a.Name)
+		d.hint("say which arm it is in: series_resistance_in = %q in [fit]", d.lastShunt())
+		return true
+	}
+	return false
 }
 
 // lastShunt is the name of the last shunt arm, or "".

@@ -132,24 +132,33 @@ func (d *decoder) toRMS(n *node, v quantity.Value, around quantity.Convention) f
 
 // amplitude is the index in the generator's Amplitudes of a figure that a step asks for.
 func (d *decoder) amplitude(n *node) (i int, ok bool) {
-	emf, ok := d.emf(n, notNegative)
+	emf, a, ok := d.shown(n)
 	if !ok {
 		return 0, false
+	}
+	i, fresh := d.drive.amplitudes.of(emf)
+	if fresh {
+		d.plan.Generator.Amplitudes = append(d.plan.Generator.Amplitudes, a)
+	}
+	return i, true
+}
+
+// shown is the amplitude that the generator gives at a figure that it shows, and what the figure itself means, V rms.
+func (d *decoder) shown(n *node) (emf float64, a Amplitude, ok bool) {
+	emf, ok = d.emf(n, notNegative)
+	if !ok {
+		return 0, a, false
 	}
 	g := &d.plan.Generator
 	if g.MaxAmplitude > 0 && emf > g.MaxAmplitude*(1+sameValue) {
 		d.fault(n, "%q is above the generator's max_amplitude: %s against %s rms open circuit", n.text,
 			quantity.Format(emf, 4, "V"), quantity.Format(g.MaxAmplitude, 4, "V"))
 	}
-	i, fresh := d.drive.amplitudes.of(emf)
-	if fresh {
-		a := Amplitude{Shown: n.text, EMF: exactly(emf)}
-		for _, m := range d.drive.measured {
-			if same(m.emf, emf) {
-				a = m.amplitude
-			}
+	a = Amplitude{Shown: n.text, EMF: exactly(emf)}
+	for _, m := range d.drive.measured {
+		if same(m.emf, emf) {
+			a = m.amplitude
 		}
-		g.Amplitudes = append(g.Amplitudes, a)
 	}
-	return i, true
+	return emf, a, true
 }

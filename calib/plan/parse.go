@@ -30,6 +30,7 @@ func Parse(file string, source []byte) (*Plan, error) {
 	d.blocks(top)
 	d.fit(top)
 	d.decision(top)
+	d.freedoms(top)
 	top.done()
 	if len(d.faults) == 0 {
 		d.chooseRanges()

@@ -31,6 +31,7 @@ type Plan struct {
 	Steps     []Step
 	Fit       Fit
 	Decision  Decision
+	Bench     Freedoms
 
 	Frequencies []float64 // Hz, the different ones of the steps, in order of first use
 }

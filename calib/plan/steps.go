@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
-	"sort"
 
 	"rungproof/circuit"
 )
@@ -97,11 +96,6 @@ const headroom = 1.05
 // chooseRanges finds the range of each step that leaves it open, and reports ladders that have no solution.
 func (d *decoder) chooseRanges() {
 	p := d.plan
-	bySize := make([]int, len(p.Detector.Ranges))
-	for i := range bySize {
-		bySize[i] = i
-	}
-	sort.SliceStable(bySize, func(i, j int) bool { return p.Detector.Ranges[bySize[i]] < p.Detector.Ranges[bySize[j]] })
 	transfer := transfers{plan: p, known: map[string]complex128{}}
 	reported := -1
 	for i := range p.Steps {
@@ -117,10 +111,25 @@ func (d *decoder) chooseRanges() {
 		if !s.Auto {
 			continue
 		}
-		reading := p.reading(s, cmplx.Abs(h)*p.Generator.Amplitudes[s.Amplitude].EMF.X)
-		k := sort.Search(len(bySize), func(k int) bool { return p.Detector.Ranges[bySize[k]] >= headroom*reading })
-		s.Range = bySize[min(k, len(bySize)-1)]
+		s.Range = p.Detector.smallest(p.reading(s, cmplx.Abs(h)*p.Generator.Amplitudes[s.Amplitude].EMF.X))
 	}
+}
+
+// smallest is the smallest range that holds a reading, V rms, with headroom, or else the largest.
+func (x *Detector) smallest(reading float64) int {
+	holds, largest := -1, 0
+	for k, full := range x.Ranges {
+		if full > x.Ranges[largest] {
+			largest = k
+		}
+		if full >= headroom*reading && (holds < 0 || full < x.Ranges[holds]) {
+			holds = k
+		}
+	}
+	if holds < 0 {
+		return largest
+	}
+	return holds
 }
 
 func (d *decoder) blockOn(line int) *node {
