@@ -73,7 +73,7 @@ func Advise(p *plan.Plan, set *reading.Set, what string, minutes float64) (*Advi
 	if what != "" && !slices.Contains(AdviceFor, what) {
 		panic("calib: no advice is given for " + what)
 	}
-	m, last, err := start(p, set)
+	m, last, err := atHand(p, set)
 	if err != nil {
 		return nil, err
 	}
@@ -117,8 +117,8 @@ func asking(what string, have int) func(w *layout) []int {
 	}
 }
 
-// start is the model before anything is added, and the step that the bench stands at.
-func start(p *plan.Plan, set *reading.Set) (m *model, last int, err error) {
+// atHand is the model before anything is added, and the step that the bench stands at.
+func atHand(p *plan.Plan, set *reading.Set) (m *model, last int, err error) {
 	if set == nil {
 		return perfect(p), len(p.Steps) - 1, nil
 	}

@@ -3,6 +3,7 @@ package calib
 import (
 	"errors"
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/mat"
 
@@ -19,16 +20,16 @@ import (
 // With C the covariance of everything, priors included, and J the rows of a step,
 // its readings have the variances W⁻¹ by themselves, and
 //
-//	Q  = J·C·Jᵀ                       those of what is predicted for them
-//	Q' = Q − J·C_a·C_aa⁻¹·C_aᵀ·Jᵀ     the same, were the parameters asked for (a) known
+//	Q  = J·C·Jᵀ      those of what is predicted for them
+//	Q' = J·C'·Jᵀ     the same, C' being C were the parameters asked for (a) known
 //
 // det C_aa falls by det(I + W½·Q'·W½)/det(I + W½·Q·W½), which is what Sherman,
 // Morrison and Woodbury's update of C comes to. A turned reference or a second
 // amplitude is found for what it does to C.
 
-// leastReturn is the fall of the logarithm of the uncertainty, a minute, below
-// which a step is not worth its time: 3 %.
-const leastReturn = 0.03
+// LeastReturn is the fall of the logarithm of the uncertainty, a minute, below
+// which a step is not worth its time: 5 %.
+const LeastReturn = 0.05
 
 // mostRepeats is more than anyone takes at one step by hand.
 const mostRepeats = 1024
@@ -40,7 +41,8 @@ type search struct {
 	chosen     []*candidate // in the order of their choice
 	at         *plan.Step   // where the bench stands
 	stands     float64      // the reading expected there, V
-	cov        mat.SymDense
+	cov        mat.SymDense // of everything
+	given      mat.SymDense // of everything, were the parameters asked for known
 }
 
 // candidate is a step that could be taken.
@@ -83,13 +85,25 @@ func (s *search) candidate(i int) candidate {
 	return c
 }
 
-// update finds the covariance from the information.
+// update finds the covariances from the information. To know a parameter is to strike it from that.
 func (s *search) update() error {
-	var c mat.Cholesky
-	if !c.Factorize(s.information) {
+	struck := mat.NewSymDense(s.information.SymmetricDim(), nil)
+	struck.CopySym(s.information)
+	for _, k := range s.asked {
+		for i := range struck.SymmetricDim() {
+			struck.SetSym(i, k, 0)
+		}
+		struck.SetSym(k, k, 1)
+	}
+	var all, rest mat.Cholesky
+	if !all.Factorize(s.information) || !rest.Factorize(struck) {
 		return errors.New("the steps at hand make no problem that can be solved: their information is not positive")
 	}
-	return c.InverseTo(&s.cov)
+	_, _ = all.InverseTo(&s.cov), rest.InverseTo(&s.given) // an error would only say that the condition is high
+	for _, k := range s.asked {
+		s.given.SetSym(k, k, 0)
+	}
+	return nil
 }
 
 // run chooses steps until the time is up or nothing is worth it, and says which.
@@ -114,12 +128,13 @@ func (s *search) run(seconds float64) (stopped string, err error) {
 // best is the candidate that returns most per minute, with the number of readings
 // that it should then have in all and what that takes, in s; nil where none is worth its time.
 func (s *search) best(seconds float64) (best *candidate, n int, cost float64) {
-	var known mat.Cholesky
-	known.Factorize(s.covarianceOfAsked())
-	most := leastReturn
+	most := LeastReturn
 	for i := range s.candidates {
 		c := &s.candidates[i]
-		q, q1 := s.predicted(c, &known)
+		if s.readAlready(c) {
+			continue
+		}
+		q, q1 := c.predicted(&s.cov), c.predicted(&s.given)
 		for k := max(1, 2*c.n); k <= mostRepeats; k *= 2 {
 			time := s.cost(c, k)
 			if time > seconds {
@@ -133,6 +148,15 @@ func (s *search) best(seconds float64) (best *candidate, n int, cost float64) {
 		}
 	}
 	return best, n, cost
+}
+
+// readAlready tells of a candidate with the source off whether one has been chosen: the
+// others, at other settings, would read the same again.
+func (s *search) readAlready(c *candidate) bool {
+	off := func(c *candidate) bool { return s.m.forward.drops[s.m.forward.of[s.m.obs[c.obs].step]].stated == 0 }
+	return c.n == 0 && off(c) && slices.ContainsFunc(s.chosen, func(other *candidate) bool {
+		return off(other) && s.m.obs[other.obs].rng == s.m.obs[c.obs].rng
+	})
 }
 
 // cost is the time that it takes to give a candidate n readings, in s.
@@ -176,35 +200,16 @@ func (s *search) take(c *candidate, n int) {
 	c.n = n
 }
 
-func (s *search) covarianceOfAsked() *mat.SymDense {
-	out := mat.NewSymDense(len(s.asked), nil)
-	for a, i := range s.asked {
-		for b, j := range s.asked[:a+1] {
-			out.SetSym(a, b, s.cov.At(i, j))
-		}
-	}
-	return out
-}
-
-// predicted are Q and Q' of a candidate; known is the covariance of the parameters asked for.
-func (s *search) predicted(c *candidate, known *mat.Cholesky) (q, q1 spread) {
-	var with, solved [2]*mat.VecDense
-	for axis := range c.rows {
-		with[axis], solved[axis] = mat.NewVecDense(len(s.asked), nil), mat.NewVecDense(len(s.asked), nil)
-		for a, k := range s.asked {
-			with[axis].SetVec(a, c.rows[axis].times(func(j int) float64 { return s.cov.At(k, j) }))
-		}
-		_ = known.SolveVecTo(solved[axis], with[axis]) // says only that the condition is high
-	}
+// predicted is what the readings of a candidate are predicted with, by a covariance of the parameters.
+func (c *candidate) predicted(cov *mat.SymDense) (q spread) {
 	for a := range c.rows {
 		for b := range a + 1 {
-			x := c.rows[a].times(func(i int) float64 {
-				return c.rows[b].times(func(j int) float64 { return s.cov.At(i, j) })
+			q[a+b] = c.rows[a].times(func(i int) float64 {
+				return c.rows[b].times(func(j int) float64 { return cov.At(i, j) })
 			})
-			q[a+b], q1[a+b] = x, x-mat.Dot(with[a], solved[b])
 		}
 	}
-	return q, q1
+	return q
 }
 
 // spread is a covariance of what is read along and across: its elements 00, 01 and 11.

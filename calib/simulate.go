@@ -37,7 +37,7 @@ type Added struct {
 func (t *Truth) extra(i int) complex128 {
 	sum := complex128(0)
 	for _, a := range t.Added {
-		sum += a.Term[i] * complex(a.Size, 0)
+		sum += a.Term.Add[i] * complex(a.Size, 0)
 	}
 	return sum
 }

@@ -2,6 +2,7 @@ package calib
 
 import (
 	"math"
+	"math/cmplx"
 
 	"gonum.org/v1/gonum/mat"
 
@@ -15,18 +16,27 @@ type Hypothesis struct {
 	DOF        int
 	Size, U    []float64 // of each term, with its standard uncertainty
 
-	m     *model
-	turns []complex128
-	q     *mat.Dense // orthonormal columns: what the hypothesis can already explain
-	res   []float64  // residuals over their uncertainties, the priors' behind the readings'
-	sigma []float64
+	m      *model
+	turns  []complex128
+	swings []complex128 // by frequency: from the phase that terms were made at to the fitted one
+	q      *mat.Dense   // orthonormal columns: what the hypothesis can already explain
+	res    []float64    // residuals over their uncertainties, the priors' behind the readings'
+	sigma  []float64
 }
 
 // Suppose fits the clean hypothesis plus some terms by the same least squares as
 // everything else; no term is the clean one.
-func (e *Evaluation) Suppose(terms ...Term) (*Hypothesis, error) { return e.model.suppose(terms) }
+func (e *Evaluation) Suppose(terms ...Term) (*Hypothesis, error) {
+	from := make([]float64, len(e.Plan.Frequencies)) // the phases that terms were made at, by frequency
+	for f, k := range e.asked.layout.phase {
+		if k >= 0 {
+			from[f] = e.asked.result.P[k]
+		}
+	}
+	return e.model.suppose(terms, from)
+}
 
-func (m *model) suppose(terms []Term) (*Hypothesis, error) {
+func (m *model) suppose(terms []Term, from []float64) (*Hypothesis, error) {
 	w, _ := m.arrange(gainCommon, nothing)
 	lay := &layout{gain: make([]int, len(m.obs)), offset: -1, offsetY: -1, series: -1, phase: append([]int(nil), w.phase...)}
 	for i := range lay.gain {
@@ -58,13 +68,19 @@ func (m *model) suppose(terms []Term) (*Hypothesis, error) {
 	}
 	problem.Residuals = func(p, r []float64, jac *mat.Dense) {
 		m.residuals(lay, turns, p, r, jac)
-		m.addTerms(terms, turns, p[first:first+len(terms)], first, r, jac)
+		m.addTerms(terms, turns, from, lay, p, r, jac)
 	}
 	result, err := fit.Solve(problem)
 	if err != nil && (result == nil || result.Step > nearlySettled) {
 		return nil, err
 	}
 	h := &Hypothesis{ChiSquared: result.ChiSquared, DOF: result.DOF, m: m, turns: turns, sigma: problem.Sigma}
+	for f, k := range lay.phase {
+		h.swings = append(h.swings, 1)
+		if k >= 0 {
+			h.swings[f] = cmplx.Rect(1, result.P[k]-from[f])
+		}
+	}
 	for t := range terms {
 		h.Size, h.U = append(h.Size, result.P[first+t]), append(h.U, math.Sqrt(result.Cov.At(first+t, first+t)))
 	}
@@ -102,20 +118,28 @@ func (m *model) startClean(w *layout) ([]float64, []complex128) {
 }
 
 // addTerms takes the terms off the residuals and enters their columns.
-func (m *model) addTerms(terms []Term, turns []complex128, size []float64, first int, res []float64, jac *mat.Dense) {
+func (m *model) addTerms(terms []Term, turns []complex128, from []float64, w *layout, p []float64, res []float64, jac *mat.Dense) {
+	first := w.inputs - len(terms)
 	k := 0
 	for i := range m.obs {
 		if m.obs[i].left {
 			continue
 		}
 		for t, term := range terms {
-			c := term[i]
+			c := term.Add[i]
+			size := p[first+t]
 			if m.axes == 2 {
+				f := m.forward.drops[m.forward.of[m.obs[i].step]].frequency
 				c *= turns[i]
-				res[k+1] -= size[t] * imag(c)
+				if phase := w.phase[f]; phase >= 0 && !term.Fixed {
+					c *= cmplx.Rect(1, p[phase]-from[f])
+					jac.Set(k, phase, jac.At(k, phase)-size*imag(c))
+					jac.Set(k+1, phase, jac.At(k+1, phase)+size*real(c))
+				}
+				res[k+1] -= size * imag(c)
 				jac.Set(k+1, first+t, imag(c))
 			}
-			res[k] -= size[t] * real(c)
+			res[k] -= size * real(c)
 			jac.Set(k, first+t, real(c))
 		}
 		k += m.axes
@@ -150,6 +174,14 @@ type Score struct {
 	Size, U float64 // of the term
 }
 
+// swing turns a term from the phase that it was made at to that of the hypothesis.
+func (h *Hypothesis) swing(t Term, i int) complex128 {
+	if t.Fixed {
+		return 1
+	}
+	return h.swings[h.m.forward.drops[h.m.forward.of[h.m.obs[i].step]].frequency]
+}
+
 // Try scores one more term; false where the hypothesis explains all that the term
 // could, so that the readings say nothing of it.
 func (h *Hypothesis) Try(term Term) (Score, bool) {
@@ -159,9 +191,9 @@ func (h *Hypothesis) Try(term Term) (Score, bool) {
 		if h.m.obs[i].left {
 			continue
 		}
-		z := term[i]
+		z := term.Add[i]
 		if h.m.axes == 2 {
-			z *= h.turns[i]
+			z *= h.swing(term, i) * h.turns[i]
 			c[k+1] = imag(z) / h.sigma[k+1]
 		}
 		c[k] = real(z) / h.sigma[k]

@@ -12,8 +12,11 @@ import (
 
 // Term is a further term of the measurement model: what one unit of a suspected
 // cause adds to each mean reading, in V rms; in two-phase readings along the
-// detector's two axes. One value an observation, in the order of Sights.
-type Term []complex128
+// detector's two axes.
+type Term struct {
+	Add   []complex128 // one value an observation, in the order of Sights
+	Fixed bool         // it keeps its direction in the detector's axes, as an offset does; else it turns with the signal's phase
+}
 
 // Sight is what is known of a step that was read, for someone who thinks up causes:
 // what a detector without fault would read on a bench without fault.
@@ -97,7 +100,7 @@ func (e *Evaluation) timeSights(sights []Sight) {
 func (e *Evaluation) ByNumber(of func(s *plan.Step) circuit.Variable) Term {
 	m := e.model
 	sights := e.Sights()
-	out := make(Term, len(m.obs))
+	out := make([]complex128, len(m.obs))
 	for i := range m.obs {
 		d := &m.forward.drops[m.forward.of[m.obs[i].step]]
 		st := &m.forward.states[d.state]
@@ -110,5 +113,5 @@ func (e *Evaluation) ByNumber(of func(s *plan.Step) circuit.Variable) Term {
 			out[i] = complex(inner(d.axis, dv), 0) * sights[i].Along
 		}
 	}
-	return out
+	return Term{Add: out}
 }

@@ -52,15 +52,10 @@ var expectWidths = []int{7, 22, 10, 15, 10}
 // resolves says what the plan can tell, before anyone has measured.
 func resolves(b *strings.Builder, p *plan.Plan, x *calib.Expectation) {
 	u := func(e calib.Estimate) string {
-		switch {
-		case !e.Known:
+		if !e.Known {
 			return "not determined"
-		case e.Unit == "1":
-			return quantity.Share(e.Expanded(), 2)
-		case e.Unit == "ohm":
-			return quantity.Format(e.Expanded(), 2, "Ω")
 		}
-		return quantity.Format(e.Expanded(), 2, e.Unit)
+		return uncertain(e.Expanded(), e.Unit)
 	}
 	fmt.Fprintln(b, "What this plan can resolve (U of what is found)")
 	fmt.Fprintf(b, "  gain               %s\n", u(x.Gain))
@@ -79,7 +74,29 @@ func resolves(b *strings.Builder, p *plan.Plan, x *calib.Expectation) {
 	for _, g := range x.GainByRange {
 		fmt.Fprintf(b, "  gain of the %s range  %s\n", displayed(g.Range/p.Detector.ToRMS), u(g.Estimate))
 	}
+	if found := finds(x); found != "" {
+		fmt.Fprintln(b, strings.Join(wrap("  ", found, "  "), "\n"))
+	}
 	b.WriteByte('\n')
+}
+
+// finds is what a detector or a bench must have for the plan to find it.
+func finds(x *calib.Expectation) string {
+	var errors []string
+	add := func(name string, least float64, unit string) {
+		if !math.IsNaN(least) {
+			errors = append(errors, fmt.Sprintf("%s of %s", name, uncertain(least, unit)))
+		}
+	}
+	d := &x.Detectable
+	add("a gain error", float64(d.Gain), "1")
+	add("an offset", float64(d.Offset), x.Offset.Unit)
+	add("a series resistance", float64(d.Series), "ohm")
+	if len(errors) == 0 {
+		return ""
+	}
+	return fmt.Sprintf("found with %s power at %s false alarm (2.8 u): %s",
+		percent(calib.Power), percent(calib.FalseAlarm), strings.Join(errors, ", "))
 }
 
 // globalRisks are the largest risks that the rule runs with detectors of the plan's prior.

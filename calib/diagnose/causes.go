@@ -62,11 +62,18 @@ type bench struct {
 
 // each makes a term from what one unit of it adds to a reading.
 func (b *bench) each(of func(s *calib.Sight) complex128) calib.Term {
-	out := make(calib.Term, len(b.s))
+	out := make([]complex128, len(b.s))
 	for i := range b.s {
 		out[i] = of(&b.s[i])
 	}
-	return out
+	return calib.Term{Add: out}
+}
+
+// still is a term that keeps its direction in the detector's axes.
+func (b *bench) still(of func(s *calib.Sight) complex128) calib.Term {
+	t := b.each(of)
+	t.Fixed = true
+	return t
 }
 
 // expected is the reading of a detector without fault.
@@ -113,10 +120,10 @@ func (b *bench) gain() cause {
 }
 
 func (b *bench) offset() cause {
-	c := known(Offset, []variant{{"", "V", b.each(func(*calib.Sight) complex128 { return 1 })}}, "the detector's",
+	c := known(Offset, []variant{{"", "V", b.still(func(*calib.Sight) complex128 { return 1 })}}, "the detector's",
 		"zero the detector's output with the input shorted, or correct the readings by it.", "a reading with the source off: an offset stays.")
 	if b.p.Detector.Reads == plan.TwoPhase {
-		c.variants = append(c.variants, variant{"in quadrature", "V", b.each(func(*calib.Sight) complex128 { return 1i })})
+		c.variants = append(c.variants, variant{"in quadrature", "V", b.still(func(*calib.Sight) complex128 { return 1i })})
 	}
 	return c
 }
@@ -138,7 +145,7 @@ func (b *bench) offsetOfRange() cause {
 	if b.ranges() < 2 {
 		return cause{}
 	}
-	return known(OffsetOfRange, []variant{{"", "1", b.each(func(s *calib.Sight) complex128 { return complex(s.Full, 0) })}}, "the detector's",
+	return known(OffsetOfRange, []variant{{"", "1", b.still(func(s *calib.Sight) complex128 { return complex(s.Full, 0) })}}, "the detector's",
 		`zero the output on each range, or fit it: offset = "share of range" in [fit].`, "one small reading on two ranges: an offset in volts stays the same.")
 }
 
@@ -233,7 +240,7 @@ func (b *bench) rangeGain() cause {
 }
 
 func nonZero(t calib.Term) bool {
-	for _, z := range t {
+	for _, z := range t.Add {
 		if z != 0 {
 			return true
 		}
@@ -254,8 +261,8 @@ func (b *bench) loading() cause {
 	if !math.IsInf(b.p.Detector.InputResistance.X, 0) {
 		r := b.p.Detector.InputResistance.X
 		term := b.e.ByNumber(func(*plan.Step) circuit.Variable { return circuit.Variable{Element: circuit.InputR} })
-		for i := range term { // one unit: all of the conductance stated once more
-			term[i] *= complex(-r, 0)
+		for i := range term.Add { // one unit: all of the conductance stated once more
+			term.Add[i] *= complex(-r, 0)
 		}
 		c.variants = append(c.variants, variant{"conductance of the input beyond the stated", "1", term})
 	}
@@ -375,7 +382,7 @@ func (b *bench) drift() cause {
 	}
 	return known(Drift, []variant{
 		{"of the gain, over the run", "1", b.each(func(s *calib.Sight) complex128 { return at(s) * expected(s) })},
-		{"of the offset, over the run", "V", b.each(at)},
+		{"of the offset, over the run", "V", b.still(at)},
 	}, "the detector's", "let the bench warm up; read the first steps once more at the end.", "the first step once more at the end.")
 }
 
@@ -402,7 +409,7 @@ func (b *bench) skewed() cause {
 		return cause{}
 	}
 	return known(Skewed, []variant{
-		{"", "rad", b.each(func(s *calib.Sight) complex128 { return complex(0, real(expected(s))) })},
+		{"", "rad", b.still(func(s *calib.Sight) complex128 { return complex(0, real(expected(s))) })},
 	}, "the detector's", "have its phase adjusted.", "the reference turned by 90°: x and y change places.")
 }
 
@@ -412,10 +419,10 @@ func (b *bench) outlier() cause {
 		if b.s[i].Left {
 			continue
 		}
-		term := make(calib.Term, len(b.s))
-		term[i] = 1
+		term := calib.Term{Add: make([]complex128, len(b.s))}
+		term.Add[i] = 1
 		if b.p.Detector.Reads == plan.TwoPhase {
-			term[i] = b.s[i].Along / complex(math.Max(cmplx.Abs(b.s[i].Along), 1e-300), 0)
+			term.Add[i] = b.s[i].Along / complex(math.Max(cmplx.Abs(b.s[i].Along), 1e-300), 0)
 		}
 		c.variants = append(c.variants, variant{"step " + b.p.Steps[b.s[i].Step].ID, "V", term})
 	}

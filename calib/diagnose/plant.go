@@ -59,8 +59,8 @@ func find(all []cause, f Fault) (calib.Term, error) {
 		if near == "" {
 			near = calib.List(labels)
 		}
-		return nil, fmt.Errorf("%s: there is no %q in this plan; nearest: %s", f.Kind, f.Variant, near)
+		return calib.Term{}, fmt.Errorf("%s: there is no %q in this plan; nearest: %s", f.Kind, f.Variant, near)
 	}
 	sort.Strings(kinds)
-	return nil, fmt.Errorf("this plan cannot show %s; it can show: %s", f.Kind, strings.Join(kinds, ", "))
+	return calib.Term{}, fmt.Errorf("this plan cannot show %s; it can show: %s", f.Kind, strings.Join(kinds, ", "))
 }

@@ -236,4 +236,3 @@ func (c sqliteConn) Close() error {
 	}
 	return errors.Join(append(errs, c.Conn.Close())...)
 }
-

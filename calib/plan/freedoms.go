@@ -2,6 +2,7 @@ package plan
 
 import (
 	"math"
+	"slices"
 
 	"github.com/pelletier/go-toml/v2/unstable"
 
@@ -78,8 +79,8 @@ func (d *decoder) freedoms(top *table) {
 	t.done()
 }
 
-// freeAmplitudes are those listed, or else those of the steps with a tenth and ten times of each; ten times only where
-// the plan says how far the generator may go.
+// freeAmplitudes are those listed, or else those of the steps with those that were measured, and a tenth and ten times of
+// each; ten times only where the plan says how far the generator may go.
 func (d *decoder) freeAmplitudes(list, sourceOff *node) (amplitudes []Amplitude) {
 	var seen distinct
 	offListed := false
@@ -102,8 +103,12 @@ func (d *decoder) freeAmplitudes(list, sourceOff *node) (amplitudes []Amplitude)
 		add(n)
 	}
 	if list == nil && len(d.faults) == 0 {
+		all := slices.Clone(d.plan.Generator.Amplitudes)
+		for _, m := range d.drive.measured {
+			all = append(all, m.amplitude)
+		}
 		for _, factor := range []float64{1, 0.1, 10} {
-			for _, a := range d.plan.Generator.Amplitudes {
+			for _, a := range all {
 				if n := d.times(a, factor); n != nil {
 					add(n)
 				}
@@ -121,9 +126,10 @@ func (d *decoder) freeAmplitudes(list, sourceOff *node) (amplitudes []Amplitude)
 	return amplitudes
 }
 
-// times is a multiple of an amplitude as a person would write it; nil for one that the generator may not be set to.
+// times is a multiple of an amplitude as a person would write it; nil for one that the generator may not be set to, and
+// for one of which nothing is known where the others were measured.
 func (d *decoder) times(a Amplitude, factor float64) *node {
-	text := a.Shown
+	text, g := a.Shown, &d.plan.Generator
 	if factor != 1 {
 		v, err := quantity.Parse(a.Shown, quantity.Voltage)
 		if err != nil || v.X == 0 {
@@ -133,7 +139,11 @@ func (d *decoder) times(a Amplitude, factor float64) *node {
 			quantity.Peak: "Vpk", quantity.PeakToPeak: "Vpp"}[v.Convention])
 	}
 	n := &node{kind: unstable.String, text: text}
-	if emf, ok := d.emf(n, notNegative); factor > 1 && !(ok && emf <= d.plan.Generator.MaxAmplitude*(1+sameValue)) {
+	emf, ok := d.emf(n, notNegative)
+	switch most := g.MaxAmplitude; {
+	case !ok || most > 0 && emf > most*(1+sameValue) || most == 0 && factor > 1:
+		return nil
+	case factor != 1 && a.Measured && !g.Amplitude.Stated() && !g.PerSetting.Stated():
 		return nil
 	}
 	return n

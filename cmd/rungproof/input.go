@@ -37,6 +37,8 @@ func fileError(name string, err error) error {
 	return fmt.Errorf("%s: %w", name, err)
 }
 
+var bothFromInput = hinted{"standard input can be the plan or the readings, not both", "name a file for one of them"}
+
 func (s *streams) plan(name string) (*plan.Plan, error) {
 	called, b, err := s.source(name)
 	if err != nil {

@@ -78,7 +78,7 @@ or the usage.`,
 // evaluate reads, judges and explains.
 func (s *streams) evaluate(planFile, readingsFile string) (*calib.Evaluation, error) {
 	if planFile == "-" && readingsFile == "-" {
-		return nil, hinted{"standard input can be the plan or the readings, not both", "name a file for one of them"}
+		return nil, bothFromInput
 	}
 	p, err := s.plan(planFile)
 	if err != nil {
