@@ -81,16 +81,7 @@ func (s *Simulator) Readings(t Truth, random *rand.Rand) *reading.Set {
 				z += complex(t.Lean, 0) * (before - still)
 			}
 			clock = clock.Add(time.Duration(1e9 * detector.Settling(m.plan.Steps[o.step].TimeConstant, m.plan.Detector.Poles, settled)))
-			if m.plan.Detector.Reads == plan.Magnitude {
-				z = complex(cmplx.Abs(z), 0)
-			}
-			if m.axes == 1 {
-				z = complex(real(z), 0)
-			}
-			if display := m.plan.Detector.Resolution * m.plan.Detector.Ranges[o.rng]; display > 0 && !t.Fine {
-				z = complex(math.Round(real(z)/display)*display, math.Round(imag(z)/display)*display)
-			}
-			set.Readings = append(set.Readings, reading.Reading{Step: o.step, X: real(z), Y: imag(z), Range: o.rng, Time: clock.Truncate(time.Second)})
+			set.Readings = append(set.Readings, m.displayed(i, z, &t, clock))
 		}
 		before = still
 	}

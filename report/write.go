@@ -49,7 +49,21 @@ func Write(dir string, e *calib.Evaluation) error {
 	for _, f := range figures {
 		files = append(files, file{f.Name, f.PNG})
 	}
-	return writeAll(dir, files)
+	if err := writeAll(dir, files); err != nil {
+		return err
+	}
+	// A figure of an earlier report that this one does not make would mislead.
+	for _, name := range reportFigures {
+		if !slices.ContainsFunc(files, func(f file) bool { return f.name == name }) {
+			os.Remove(filepath.Join(dir, name))
+		}
+	}
+	return nil
+}
+
+// WriteFile writes one file, whole or not at all.
+func WriteFile(name string, content []byte) error {
+	return writeAll(filepath.Dir(name), []file{{filepath.Base(name), content}})
 }
 
 type file struct {
@@ -90,12 +104,6 @@ func writeAll(dir string, files []file) (err error) {
 	for i, f := range files {
 		if err := os.Rename(temporary[i], filepath.Join(dir, f.name)); err != nil {
 			return fmt.Errorf("%s cannot be written: %w", filepath.Join(dir, f.name), err)
-		}
-	}
-	// A figure of an earlier report that this one does not make would mislead.
-	for _, name := range reportFigures {
-		if !slices.ContainsFunc(files, func(f file) bool { return f.name == name }) {
-			os.Remove(filepath.Join(dir, name))
 		}
 	}
 	return nil

@@ -25,11 +25,6 @@ func planOf(t testing.TB, name string) *plan.Plan {
 	return p
 }
 
-// accuses tells whether a finding names a cause, and not a property of the plan.
-func accuses(f calib.Finding) bool {
-	return f.Evidence != nil || f.Kind == RangeGain || f.Kind == Scatter || f.Kind == Misfit || f.Kind == OddReading || f.Kind == NoSignal
-}
-
 // Nothing is found in clean data: of 2000 simulated campaigns of a detector and a
 // bench without fault, inputs drawn from their distributions, at most 5 % report
 // any cause at all (-long; 300 in the ordinary run, at most 7 %: 1.6 standard
@@ -53,7 +48,7 @@ func TestCleanReadingsAccuseNobody(t *testing.T) {
 				}
 				any := false
 				for _, f := range Findings(e) {
-					if accuses(f) {
+					if Accuses(f) {
 						kinds[f.Kind]++
 						any = true
 					}

@@ -114,7 +114,7 @@ func firstCauses(t *testing.T, p *plan.Plan, tr trial, size, times float64, camp
 		}
 		first := "nothing"
 		for _, f := range Findings(e) {
-			if accuses(f) {
+			if Accuses(f) {
 				first = f.Kind
 				break
 			}

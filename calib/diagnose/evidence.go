@@ -39,9 +39,20 @@ func shown(e *calib.Evaluation) []calib.Finding {
 		before = after
 	}
 	if !named[RangeGain] {
-		out = append(out, rangeGain(e)...)
+		out = append(out, rangeGainBeside(e, len(out) > 0 && fitOf(left) >= misfitLevel)...)
 	}
 	return append(out, misfit(e, left)...)
+}
+
+// rangeGainBeside is the finding that one gain is not enough; where the causes
+// already named explain why, it only says what the verdict rests on.
+func rangeGainBeside(e *calib.Evaluation, explained bool) []calib.Finding {
+	all := rangeGain(e)
+	if len(all) == 0 || !explained {
+		return all
+	}
+	return one(OneGainEach, "", "one gain for all ranges does not fit (%s), which the causes above explain; errors and verdict rest on a fit with one gain a range.",
+		probability(float64(e.Result.ByRange.PCommon)))
 }
 
 // finding puts a cause in words.

@@ -24,6 +24,7 @@ const (
 	Gain           = "gain"
 	Convention     = "amplitude convention"
 	RangeGain      = "gain by range"
+	OneGainEach    = "one gain a range"
 	Misfit         = "misfit"
 	Scatter        = "scatter"
 	BeyondScale    = "beyond full scale"

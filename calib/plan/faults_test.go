@@ -60,7 +60,7 @@ func (c brokenPlan) source(t testing.TB) string {
 
 func TestBrokenPlans(t *testing.T) {
 	files, err := filepath.Glob("testdata/faults/*.txt")
-	if err != nil || len(files) != 4 {
+	if err != nil || len(files) != 5 {
 		t.Fatal(files, err)
 	}
 	for _, file := range files {

@@ -197,13 +197,12 @@ func (d *decoder) freeFrequencies(n *node) (hertz []float64) {
 		return d.plan.Frequencies
 	}
 	var seen distinct
-	for _, f := range append(append([]float64(nil), d.plan.Frequencies...), d.frequencies(n)...) {
-		seen.of(f) // where a step has the same, in its spelling
+	for _, f := range d.plan.Frequencies {
+		seen.of(f)
 	}
 	for _, f := range d.frequencies(n) {
-		if i, ok := seen.find(f); ok {
-			hertz = append(hertz, seen.values[i])
-		}
+		i, _ := seen.of(f)
+		hertz = including(hertz, seen.values[i]) // where a step has the same, in its spelling
 	}
 	return hertz
 }

@@ -50,7 +50,7 @@ func run(args []string, stdin io.Reader, stdout, stderr io.Writer) int {
 	root.SetOut(stdout)
 	root.SetErr(stderr)
 	root.SetArgs(joined(args))
-	root.AddCommand(draftCommand(s), expectCommand(s), sheetCommand(s), judgeCommand(s), budgetCommand(s), adviseCommand(s))
+	root.AddCommand(draftCommand(s), expectCommand(s), sheetCommand(s), judgeCommand(s), budgetCommand(s), rehearseCommand(s), adviseCommand(s))
 	if err := root.Execute(); err != nil {
 		fmt.Fprintln(stderr, message(err))
 		return exitFault
@@ -68,6 +68,7 @@ the wiring)?
   rungproof sheet plan.toml > bench.csv  a bench sheet to fill in
   rungproof judge plan.toml bench.csv    the verdict
   rungproof budget plan.toml bench.csv   where the uncertainty comes from
+  rungproof rehearse plan.toml           the readings of a simulated bench
   rungproof advise plan.toml bench.csv   what to measure next
 
 Exit status: 0 pass, 1 fail, 3 conditional or not judged, 2 a fault in the input

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"io"
+	"math/rand/v2"
 	"os"
 	"os/signal"
 	"strconv"
@@ -60,6 +61,9 @@ func (s *streams) confirm(e *calib.Evaluation, asked string, seed uint64) error 
 	e.Result.MonteCarlo, err = e.MonteCarlo(ctx, calib.MonteCarloOptions{Trials: n, Seed: seed, Progress: bar.show})
 	return err
 }
+
+// seeded is the source of chance of a command.
+func seeded(seed uint64) *rand.Rand { return rand.New(rand.NewPCG(seed, 0)) }
 
 // progress is a bar with the time left, on a terminal only.
 type progress struct {
