@@ -79,7 +79,7 @@ and the findings get it right.`,
 	f.StringVar(&r.through, "through", "model", "model or twin")
 	f.Uint64Var(&r.seed, "seed", 1, "of chance")
 	f.IntVar(&r.trials, "trials", 0, "judge so many rehearsals and count")
-	f.StringVar(&r.out, "out", "-", "`FILE` of readings, or of --trials' figure")
+	f.StringVar(&r.out, "out", "-", "of readings, or of --trials' figure: `FILE`")
 	f.BoolVar(&r.asJSON, "json", false, "with --trials: JSON instead of a table")
 	return c
 }
