@@ -51,6 +51,9 @@ func pulls(t testing.TB, name string, campaigns int, fine bool) map[string][]flo
 // 1000 campaigns with the display set fine: pulls of mean 0 ± 0.2 and standard
 // deviation 1 ± 0.1. Their statistical errors are 0.03 and 0.02.
 func TestPullsOfSimulatedCampaigns(t *testing.T) {
+	if testing.Short() {
+		t.Skip("simulated campaigns are not run with -short")
+	}
 	for name := range truths {
 		t.Run(name, func(t *testing.T) {
 			for parameter, z := range pulls(t, name, 1000, true) {
@@ -66,6 +69,9 @@ func TestPullsOfSimulatedCampaigns(t *testing.T) {
 // With the plan's own display, whose rounding repeats do not average down, the
 // stated uncertainty can only be generous.
 func TestPullsWithTheDisplaysOwnResolution(t *testing.T) {
+	if testing.Short() {
+		t.Skip("simulated campaigns are not run with -short")
+	}
 	for name := range truths {
 		t.Run(name, func(t *testing.T) {
 			for parameter, z := range pulls(t, name, 300, false) {

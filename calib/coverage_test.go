@@ -60,6 +60,9 @@ func cover(t *testing.T, name string, campaigns int, fine bool) *coverage {
 // the quadrature case, whose display step is 0.84 u (its pulls have the mean −0.02
 // and the standard deviation 1.00), and to 94 % or more everywhere else.
 func TestCoverageOfIntervals(t *testing.T) {
+	if testing.Short() {
+		t.Skip("simulated campaigns are not run with -short")
+	}
 	campaigns, low, high, own := 500, 0.91, 0.98, 0.91
 	if *long {
 		campaigns, low, high, own = 10000, 0.94, 0.97, 0.93

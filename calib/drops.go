@@ -236,9 +236,3 @@ func along(v, axis complex128) (float64, complex128) {
 	}
 	return size, u
 }
-
-// phase is the drop's phase against the generator, rad.
-func (d *drop) phase() float64 {
-	_, u := d.size()
-	return math.Atan2(imag(u), real(u))
-}

@@ -29,6 +29,9 @@ func noisier(set *reading.Set, sd float64, random *rand.Rand) *reading.Set {
 // Repeats that scatter more than predicted make the uncertainty larger, and the
 // pulls stay of standard deviation 1; without it they would be several times that.
 func TestLargerScatterIsUsed(t *testing.T) {
+	if testing.Short() {
+		t.Skip("simulated campaigns are not run with -short")
+	}
 	p := *evaluateCase(t, "arrival").Plan
 	p.Detector.Resolution = 0
 	s := NewSimulator(&p)
@@ -53,6 +56,9 @@ func TestLargerScatterIsUsed(t *testing.T) {
 
 // Clean repeats are called noisy in one of a hundred campaigns, the level of the test.
 func TestCleanScatterIsLeftAlone(t *testing.T) {
+	if testing.Short() {
+		t.Skip("simulated campaigns are not run with -short")
+	}
 	p := *evaluateCase(t, "string").Plan
 	p.Detector.Resolution = 0
 	s := NewSimulator(&p)
@@ -75,6 +81,9 @@ func TestCleanScatterIsLeftAlone(t *testing.T) {
 // Where the plan states no noise, the repeats say what it is, with their degrees
 // of freedom, and the coverage factor is Student's.
 func TestScatterServesWhereNoNoiseIsStated(t *testing.T) {
+	if testing.Short() {
+		t.Skip("simulated campaigns are not run with -short")
+	}
 	full := *evaluateCase(t, "arrival").Plan
 	full.Detector.Resolution = 0
 	silent := full
@@ -104,6 +113,9 @@ func TestScatterServesWhereNoNoiseIsStated(t *testing.T) {
 // A magnitude in the noise reads high (Rice 1945); the estimate takes that off,
 // down to a signal of one standard deviation of the noise.
 func TestMagnitudeInTheNoiseIsUnbiased(t *testing.T) {
+	if testing.Short() {
+		t.Skip("simulated campaigns are not run with -short")
+	}
 	p := *evaluateCase(t, "string").Plan
 	p.Detector.Resolution, p.Detector.Stability = 0, 0
 	p.Detector.Noise = 3.2e-6 // filtered: 0.9 µV, as much as the lowest drop

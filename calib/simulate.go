@@ -104,7 +104,7 @@ func (m *model) one(i int, nu []float64, t *Truth, random *rand.Rand) complex128
 	case plan.Magnitude:
 		return complex(g*size*(1+scatter), 0) + offset + noise
 	}
-	return complex(g*size*m.cosineOf(o, nu)+scatter*d.stated, 0) + offset + noise
+	return complex(g*size*m.cosineOf(o, nu)*(1+scatter), 0) + offset + noise
 }
 
 // simulationStart is when simulated readings begin.

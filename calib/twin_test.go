@@ -14,6 +14,9 @@ import (
 // means within three standard errors, standard deviations within 3 % (2500 readings
 // a step, whose standard deviation is known to 1.4 %), for each kind of detector.
 func TestModelAndTwinAgree(t *testing.T) {
+	if testing.Short() {
+		t.Skip("simulated campaigns are not run with -short")
+	}
 	for _, c := range []struct {
 		on    string
 		steps []int

@@ -36,7 +36,7 @@ func Figures(e *calib.Evaluation) ([]Figure, error) {
 func figureSheets(e *calib.Evaluation) []*figureSheet {
 	var sheets []*figureSheet
 	for _, lay := range []func(*calib.Evaluation) *figureSheet{
-		readingsFigure, errorsFigure, unexplainedFigure, jointFigure, budgetFigure, frequencyFigure,
+		readingsFigure, errorsFigure, unexplainedFigure, jointFigure, evidenceFigure, residualsFigure, budgetFigure, frequencyFigure,
 	} {
 		if s := lay(e); s != nil {
 			sheets = append(sheets, s)

@@ -13,12 +13,13 @@ import (
 	"rungproof/calib"
 )
 
-// figureBar is one line of a budget, or the small ones together.
+// figureBar is a share in percent: of a budget, one line of it or the small ones together.
 type figureBar struct {
-	name   string
-	share  float64 // of the variance, in percent
-	u      string  // what it gives
-	colour color.Color
+	name      string
+	share     float64
+	low, high float64 // its whisker; none where both are zero
+	words     string  // at its end
+	colour    color.Color
 }
 
 // What a budget's bar stands for.
@@ -63,7 +64,7 @@ func budgetFigure(e *calib.Evaluation) *figureSheet {
 		}
 	}
 	for i, bars := range all {
-		panel := figureBudgetPanel(bars, widest)
+		panel := figureBarPanel(bars, widest)
 		panel.head = figureMinus(firstUpper(budgetResult(shown[i]))) + ", k = " + factor(shown[i].K)
 		panel.share = float64(row)*float64(len(bars)) + figureMargin
 		if improve := shown[i].Improve; len(improve) > 0 {
@@ -104,12 +105,16 @@ func figureBudgetBars(e *calib.Evaluation, b *calib.Budget) []figureBar {
 		if input[l.Name] {
 			colour = figureOfInput
 		}
-		bars = append(bars, figureBar{figureTwoLines(l.Name), 100 * l.Share, m.of(math.Abs(l.Contribution)), colour})
+		bars = append(bars, figureBudgetBar(figureTwoLines(l.Name), l.Share, m.of(math.Abs(l.Contribution)), colour))
 	}
 	if rest.share >= leastShare {
-		bars = append(bars, figureBar{"all others (" + calib.Counted(rest.count, "line") + ")", 100 * rest.share, m.of(rest.u), figureOfOthers})
+		bars = append(bars, figureBudgetBar("all others ("+calib.Counted(rest.count, "line")+")", rest.share, m.of(rest.u), figureOfOthers))
 	}
 	return bars
+}
+
+func figureBudgetBar(name string, share float64, u string, colour color.Color) figureBar {
+	return figureBar{name: name, share: 100 * share, words: sharePercent(share) + " (u = " + u + ")", colour: colour}
 }
 
 // figureTwoLines breaks a long name between words, and cuts what two lines do not hold.
@@ -133,8 +138,8 @@ func (t figureShareTicks) Ticks(low, high float64) []plot.Tick {
 	return t.figureTicks.Ticks(low, math.Min(high, 100))
 }
 
-// figureBudgetPanel draws the bars, the first on top, with room for what is written at the longest.
-func figureBudgetPanel(bars []figureBar, widest float64) *figurePanel {
+// figureBarPanel draws the bars, the first on top, with room for what is written at the longest.
+func figureBarPanel(bars []figureBar, widest float64) *figurePanel {
 	const half, room = 0.34, 0.55
 	panel := newFigurePanel(1, "", "")
 	panel.X.Min, panel.X.Max = 0, widest/room
@@ -151,8 +156,11 @@ func figureBudgetPanel(bars []figureBar, widest float64) *figurePanel {
 		for i, bar := range bars {
 			y := float64(len(bars) - 1 - i)
 			a.fill(bar.colour, figureXY{0, y - half}, figureXY{bar.share, y - half}, figureXY{bar.share, y + half}, figureXY{0, y + half})
-			at := a.at(bar.share, y)
-			a.FillText(style, vg.Point{X: at.X + 4, Y: at.Y + style.FontExtents().Descent}, sharePercent(bar.share/100)+" (u = "+bar.u+")")
+			if bar.high > bar.low {
+				a.whisker(figureLine(figureInk, figureBarred), y, bar.low, bar.high)
+			}
+			at := a.at(math.Max(bar.share, bar.high), y)
+			a.FillText(style, vg.Point{X: at.X + 4, Y: at.Y + style.FontExtents().Descent}, bar.words)
 		}
 	})
 	return panel

@@ -64,6 +64,16 @@ func (a *figureArea) bar(s draw.LineStyle, x, low, high float64) {
 	}
 }
 
+// whisker is an error bar that lies.
+func (a *figureArea) whisker(s draw.LineStyle, y, low, high float64) {
+	const half = 2.2
+	a.line(s, figureXY{low, y}, figureXY{high, y})
+	for _, x := range []float64{low, high} {
+		p := a.at(x, y)
+		a.StrokeLine2(s, p.X, p.Y-half, p.X, p.Y+half)
+	}
+}
+
 // mark is a mark with a thin white edge, which parts it from the marks beneath.
 func (a *figureArea) mark(s draw.GlyphStyle, x, y float64) {
 	p := a.at(x, y)

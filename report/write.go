@@ -110,4 +110,4 @@ func writeAll(dir string, files []file) (err error) {
 }
 
 // reportFigures are the figures that a report can have.
-var reportFigures = []string{"readings.png", "errors.png", "unexplained.png", "joint.png", "frequency.png", "budget.png"}
+var reportFigures = []string{"readings.png", "errors.png", "unexplained.png", "joint.png", "evidence.png", "residuals.png", "frequency.png", "budget.png"}

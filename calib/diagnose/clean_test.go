@@ -30,6 +30,9 @@ func planOf(t testing.TB, name string) *plan.Plan {
 // any cause at all (-long; 300 in the ordinary run, at most 7 %: 1.6 standard
 // deviations more).
 func TestCleanReadingsAccuseNobody(t *testing.T) {
+	if testing.Short() {
+		t.Skip("simulated campaigns are not run with -short")
+	}
 	campaigns, most := 300, 0.07
 	if *long {
 		campaigns, most = 2000, 0.05

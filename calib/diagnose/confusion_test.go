@@ -127,6 +127,9 @@ func firstCauses(t *testing.T, p *plan.Plan, tr trial, size, times float64, camp
 // The confusion table: the true cause against the one that is ranked first, at
 // three sizes. Where two causes are one column of the problem, either counts.
 func TestConfusion(t *testing.T) {
+	if testing.Short() {
+		t.Skip("simulated campaigns are not run with -short")
+	}
 	campaigns := 20
 	if *long {
 		campaigns = 500

@@ -12,18 +12,11 @@ import (
 // reference phases of a step share most values) is a link to there; any other is its
 // digits and its exponent. Signs and short numbers stay in the text.
 
-// numbers are those taken out of a text, in order.
-type numbers struct {
-	links     []byte // of each: how many numbers back the same one last stood, uvarint; 0: it is new
-	lengths   []byte // of each new one: how many digits
-	exponents []byte // of each new one: the power of ten of the first digit, varint
-	digits    []byte // of each new one
-}
-
 const (
-	mark      = 0  // stands for a number
-	leastLong = 5  // digits of a number worth taking out
-	mostLong  = 40 // digits
+	mark      = 0   // stands for a number
+	leastLong = 5   // digits of a number worth taking out
+	mostLong  = 40  // digits
+	farthest  = 400 // power of ten, from 0
 )
 
 // number is 0.d₁d₂d₃… · 10^(exponent+1), without zeros at either end.
@@ -32,13 +25,16 @@ type number struct {
 	exponent int
 }
 
-// splitNumbers takes the long numbers out of content. It is not ok where content
-// holds the mark itself or hardly any numbers.
-func splitNumbers(content []byte) (text []byte, n numbers, ok bool) {
+// splitNumbers takes the long numbers out of content. The table has of each number how
+// many numbers back the same one last stood, or 0 where it is new (uvarint); then of
+// each new one how many digits it has (uvarint); then of each new one its exponent
+// (varint). It is not ok where content holds the mark itself or hardly any numbers.
+func splitNumbers(content []byte) (text, table, digits []byte, ok bool) {
 	if bytes.IndexByte(content, mark) >= 0 {
-		return nil, n, false
+		return nil, nil, nil, false
 	}
 	text = make([]byte, 0, len(content))
+	var lengths, exponents []byte
 	last := map[number]int{} // where each number last stood
 	count := 0
 	for i := 0; i < len(content); {
@@ -56,54 +52,126 @@ func splitNumbers(content []byte) (text []byte, n numbers, ok bool) {
 		}
 		text = append(text, mark)
 		if before, again := last[x]; again {
-			n.links = binary.AppendUvarint(n.links, uint64(count-before))
+			table = binary.AppendUvarint(table, uint64(count-before))
 		} else {
-			n.links = append(n.links, 0)
-			n.lengths = append(n.lengths, byte(len(x.digits)))
-			n.exponents = binary.AppendVarint(n.exponents, int64(x.exponent))
-			n.digits = append(n.digits, x.digits...)
+			table = append(table, 0)
+			lengths = binary.AppendUvarint(lengths, uint64(len(x.digits)))
+			exponents = binary.AppendVarint(exponents, int64(x.exponent))
+			digits = append(digits, x.digits...)
 		}
 		last[x] = count
 		count++
 	}
-	return text, n, count >= 16
+	return text, append(append(table, lengths...), exponents...), digits, count >= 16
 }
 
 // joinNumbers puts the numbers back in the text.
-func joinNumbers(text []byte, n numbers) ([]byte, error) {
-	out := make([]byte, 0, 3*len(text))
-	var seen [][2]int // where in out each number stands
-	for {
-		at := bytes.IndexByte(text, mark)
-		if at < 0 {
-			break
+func joinNumbers(text, table, packedDigits []byte) ([]byte, error) {
+	bad := false
+	next := func() int {
+		n, w := binary.Uvarint(table)
+		if w <= 0 || n > 1<<30 {
+			bad = true
+			return 0
 		}
-		out = append(out, text[:at]...)
-		text = text[at+1:]
-		back, w := binary.Uvarint(n.links)
-		if w <= 0 || back > uint64(len(seen)) {
+		table = table[w:]
+		return int(n)
+	}
+	links := make([]int, bytes.Count(text, []byte{mark}))
+	fresh := 0
+	for i := range links {
+		if links[i] = next(); links[i] > i {
+			return nil, errPacked
+		} else if links[i] == 0 {
+			fresh++
+		}
+	}
+	lengths := make([]int, fresh)
+	total := 0
+	for i := range lengths {
+		lengths[i] = next()
+		if lengths[i] < 1 || lengths[i] > mostLong {
 			return nil, errPacked
 		}
-		n.links = n.links[w:]
+		total += lengths[i]
+	}
+	digits, ok := unpackDigits(packedDigits, total)
+	if bad || !ok {
+		return nil, errPacked
+	}
+	out := make([]byte, 0, len(text)+12*len(links))
+	seen := make([][2]int, len(links)) // where in out each number stands
+	for i, link := range links {
+		at := bytes.IndexByte(text, mark)
+		out = append(out, text[:at]...)
+		text = text[at+1:]
 		start := len(out)
-		if back > 0 {
-			from := seen[len(seen)-int(back)]
+		if link > 0 {
+			from := seen[i-link]
 			out = append(out, out[from[0]:from[1]]...)
 		} else {
-			exponent, w := binary.Varint(n.exponents)
-			if w <= 0 || exponent < -400 || exponent > 400 || len(n.lengths) == 0 || len(n.digits) < int(n.lengths[0]) || n.lengths[0] == 0 {
+			exponent, w := binary.Varint(table)
+			if w <= 0 || exponent < -farthest || exponent > farthest {
 				return nil, errPacked
 			}
-			size := int(n.lengths[0])
-			out = appendNumber(out, n.digits[:size], int(exponent))
-			n.exponents, n.lengths, n.digits = n.exponents[w:], n.lengths[1:], n.digits[size:]
+			table = table[w:]
+			out = appendNumber(out, digits[:lengths[0]], int(exponent))
+			digits, lengths = digits[lengths[0]:], lengths[1:]
 		}
-		seen = append(seen, [2]int{start, len(out)})
+		seen[i] = [2]int{start, len(out)}
 	}
-	if len(n.links)+len(n.lengths)+len(n.exponents)+len(n.digits) > 0 {
+	if len(table) > 0 {
 		return nil, errPacked
 	}
 	return append(out, text...), nil
+}
+
+// packDigits writes three digits in ten bits.
+func packDigits(digits []byte) []byte {
+	out := make([]byte, 0, len(digits)*10/24+2)
+	var held uint32 // bits not written yet
+	bits := 0
+	for i := 0; i < len(digits); i += 3 {
+		group := uint32(0)
+		for j := i; j < i+3; j++ {
+			group *= 10
+			if j < len(digits) {
+				group += uint32(digits[j] - '0')
+			}
+		}
+		held, bits = held<<10|group, bits+10
+		for ; bits >= 8; bits -= 8 {
+			out = append(out, byte(held>>(bits-8)))
+		}
+	}
+	if bits > 0 {
+		out = append(out, byte(held<<(8-bits)))
+	}
+	return out
+}
+
+// unpackDigits reads n digits; it is not ok where packed is not theirs, to the bit.
+func unpackDigits(packed []byte, n int) (digits []byte, ok bool) {
+	groups := (n + 2) / 3
+	if len(packed) != (10*groups+7)/8 {
+		return nil, false
+	}
+	digits = make([]byte, 0, 3*groups)
+	var held uint32
+	bits := 0
+	for range groups {
+		for ; bits < 10; bits += 8 {
+			held, packed = held<<8|uint32(packed[0]), packed[1:]
+		}
+		bits -= 10
+		group := held >> bits & 1023
+		if group > 999 {
+			return nil, false
+		}
+		digits = append(digits, '0'+byte(group/100), '0'+byte(group/10%10), '0'+byte(group%10))
+	}
+	spare := digits[n:]
+	return digits[:n], held&(1<<bits-1) == 0 && bytes.Count(spare, []byte{'0'}) == len(spare)
 }
 
 // numberLength is the length of the number that b begins with: digits, perhaps a
@@ -158,7 +226,7 @@ func parseNumber(token []byte) (x number, long bool) {
 		return x, false
 	}
 	exponent := power + len(whole) - 1 - (len(digits) - len(led))
-	if exponent < -400 || exponent > 400 || !bytes.Equal(appendNumber(make([]byte, 0, 64), trimmed, exponent), token) {
+	if exponent < -farthest || exponent > farthest || !bytes.Equal(appendNumber(make([]byte, 0, 64), trimmed, exponent), token) {
 		return x, false
 	}
 	return number{string(trimmed), exponent}, true

@@ -25,23 +25,20 @@ const (
 //go:embed dictionary1.txt
 var dictionary []byte
 
-// pack gives the shortest of the forms. unpack gives content back to the byte.
+// pack gives content in its short form. unpack gives it back to the byte.
 func pack(content []byte) []byte {
-	best := append([]byte{plain}, content...)
-	if b := squeeze([]byte{deflate}, content, &words); len(b) < len(best) {
-		best = b
+	packed := []byte{deflate}
+	if text, table, digits, ok := splitNumbers(content); ok {
+		packed = section([]byte{apart}, text)
+		packed = section(packed, table)
+		packed = append(packed, packDigits(digits)...)
+	} else {
+		packed = squeeze(packed, content)
 	}
-	if text, n, ok := splitNumbers(content); ok {
-		b := section([]byte{apart}, text, &words)
-		b = section(b, n.links, &words)
-		b = section(b, n.lengths, &words)
-		b = section(b, n.exponents, &words)
-		b = squeeze(b, n.digits, &figures)
-		if len(b) < len(best) {
-			best = b
-		}
+	if len(packed) > len(content) {
+		return append([]byte{plain}, content...)
 	}
-	return best
+	return packed
 }
 
 var errPacked = errors.New("packed content is damaged")
@@ -57,45 +54,36 @@ func unpack(packed []byte) ([]byte, error) {
 	case deflate:
 		return expand(rest)
 	case apart:
-		var text []byte
-		var n numbers
-		for _, into := range []*[]byte{&text, &n.links, &n.lengths, &n.exponents} {
+		var parts [2][]byte // text and table
+		for i := range parts {
 			size, w := binary.Uvarint(rest)
 			if w <= 0 || size > uint64(len(rest)-w) {
 				return nil, errPacked
 			}
 			var err error
-			if *into, err = expand(rest[w : w+int(size)]); err != nil {
+			if parts[i], err = expand(rest[w : w+int(size)]); err != nil {
 				return nil, err
 			}
 			rest = rest[w+int(size):]
 		}
-		var err error
-		if n.digits, err = expand(rest); err != nil {
-			return nil, err
-		}
-		return joinNumbers(text, n)
+		return joinNumbers(parts[0], parts[1], rest)
 	}
 	return nil, fmt.Errorf("%w: form %d is not known to this version", errPacked, packed[0])
 }
 
-// words packs text; figures packs digits, in which nothing repeats but by chance.
 var (
-	words   = sync.Pool{New: func() any { return writer(flate.BestCompression) }}
-	figures = sync.Pool{New: func() any { return writer(flate.HuffmanOnly) }}
+	writers = sync.Pool{New: func() any {
+		w, err := flate.NewWriterDict(io.Discard, flate.BestCompression, dictionary)
+		if err != nil {
+			panic("ledger: " + err.Error())
+		}
+		return w
+	}}
 	readers = sync.Pool{New: func() any { return flate.NewReaderDict(bytes.NewReader(nil), dictionary) }}
 )
 
-func writer(level int) *flate.Writer {
-	w, err := flate.NewWriterDict(io.Discard, level, dictionary)
-	if err != nil {
-		panic("ledger: " + err.Error())
-	}
-	return w
-}
-
 // squeeze appends the deflated content to b.
-func squeeze(b, content []byte, writers *sync.Pool) []byte {
+func squeeze(b, content []byte) []byte {
 	buffer := bytes.NewBuffer(b)
 	w := writers.Get().(*flate.Writer)
 	defer writers.Put(w)
@@ -110,8 +98,8 @@ func squeeze(b, content []byte, writers *sync.Pool) []byte {
 }
 
 // section appends the length of the deflated content and the deflated content.
-func section(b, content []byte, writers *sync.Pool) []byte {
-	s := squeeze(nil, content, writers)
+func section(b, content []byte) []byte {
+	s := squeeze(nil, content)
 	return append(binary.AppendUvarint(b, uint64(len(s))), s...)
 }
 

@@ -51,7 +51,9 @@ func (p *postgres) prepare(ctx context.Context) error {
 	found := 0
 	look := func(q querier) error {
 		var versions, entries bool
-		if _, err := one(ctx, q, `SELECT to_regclass('log_version') IS NOT NULL, to_regclass('log_entry') IS NOT NULL`, nil, &versions, &entries); err != nil {
+		// to_regclass would answer from a cache that is older than the lock.
+		if _, err := one(ctx, q, `SELECT coalesce(bool_or(relname = 'log_version'), false), coalesce(bool_or(relname = 'log_entry'), false)
+			FROM pg_class WHERE relnamespace = current_schema()::regnamespace`, nil, &versions, &entries); err != nil {
 			return err
 		}
 		if versions {

@@ -130,7 +130,7 @@ func (f *sqliteFile) version(ctx context.Context, q rowQuerier) (found int, err 
 		return 0, err
 	}
 	if application != applicationID && (application != 0 || tables > 0 || found != 0) {
-		return 0, fmt.Errorf("%w: it is a SQLite file of another kind", ErrNotALog)
+		return 0, fmt.Errorf("%s: %w: it is a SQLite file of another kind", f.path, ErrNotALog)
 	}
 	if found > version {
 		return found, newer(f.path, found)

@@ -25,6 +25,7 @@ func adviseCommand(s *streams) *cobra.Command {
 		Long: `Finds the further steps that shrink the uncertainty most per minute, from what
 PLAN will tell, or from what READINGS have told: a table in the order to take
 them, the uncertainties now and then, and a block to paste into the plan.
+Without --for it is gain, offset and series resistance together.
 
 [bench] in the plan says what the bench can be set to and how long each change
 takes. Left out: what the steps use, the reference turned by 180°, amplitudes
@@ -52,7 +53,7 @@ frequency, 30 s for the tap.`,
 			return err
 		},
 	}
-	c.Flags().StringVar(&what, "for", "", "the `RESULT` to improve: "+strings.Join(calib.AdviceFor, ", ")+" (all, if left out)")
+	c.Flags().StringVar(&what, "for", "", "improve one `RESULT`: "+strings.Join(calib.AdviceFor, ", "))
 	c.Flags().Float64Var(&minutes, "minutes", 10, "the `TIME` that the steps may take")
 	c.Flags().BoolVar(&asJSON, "json", false, "write JSON instead of tables")
 	return c
