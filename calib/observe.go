@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
+	"slices"
 
 	"rungproof/calib/plan"
 	"rungproof/calib/reading"
@@ -59,6 +60,9 @@ func newModel(p *plan.Plan, set *reading.Set) (*model, error) {
 	}
 	if len(m.obs) == 0 {
 		return nil, fmt.Errorf("%s: no step has a reading", set.File)
+	}
+	if !slices.ContainsFunc(m.obs, func(o observation) bool { return !o.left }) {
+		return nil, fmt.Errorf("%s: every reading is flagged: none can be fitted; take them again", set.File)
 	}
 	m.settleScatter()
 	for i := range m.obs {

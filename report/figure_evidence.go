@@ -56,7 +56,8 @@ func evidenceFigure(e *calib.Evaluation) *figureSheet {
 	if len(shown) == 0 {
 		return nil
 	}
-	s := &figureSheet{name: "evidence.png", title: "What the readings speak for", height: 58}
+	s := &figureSheet{name: "evidence.png", title: "What the readings speak for", height: 80,
+		note: "Bars: the fall of χ² when the cause is put into the model"}
 	for _, o := range figureOwners {
 		for _, ev := range shown {
 			if ownerOf(ev.Whose) == o {
@@ -68,15 +69,14 @@ func evidenceFigure(e *calib.Evaluation) *figureSheet {
 	scale := figureFallScale(fall)
 	for i, ev := range shown {
 		panel := figureEvidencePanel(ev, scale)
-		panel.head = fit(figureMinus(firstUpper(evidenceCause(ev))+": "+evidenceSize(ev)), 72)
+		panel.head = fit(firstUpper(evidenceCause(ev))+": "+typeset(evidenceSize(ev)), 80)
 		panel.share = 18 + figureMargin
 		if len(ev.Contradict) > 0 {
-			panel.foot = fit("but "+strings.Join(ev.Contradict, "; "), 84)
+			panel.foot = fit(evidenceAgainst(ev), 92)
 			panel.share += figureMargin
 		}
 		if i == len(shown)-1 {
-			panel.x = "Fall of χ² when the cause is put into the model"
-			panel.share += figureMargin + 12
+			panel.share += 12
 		} else {
 			panel.X.Tick.Marker = figureUnlabelled{panel.X.Tick.Marker}
 		}
@@ -84,7 +84,7 @@ func evidenceFigure(e *calib.Evaluation) *figureSheet {
 		s.panels = append(s.panels, panel)
 	}
 	s.caption = "Each cause that the readings show, in the order in which they were found, with its size ± U. A bar is the fall of χ² when that cause joins the ones above it; " +
-		"at its end stands its share of what a detector and a bench without fault leave unexplained. A line beneath says what speaks against it."
+		"at its end stands its share of what a detector and a bench without fault leave unexplained. A line beneath names its rivals, of which one of weight 1 explains the readings as well, and what else speaks against it."
 	if scale.log {
 		s.caption += " The scale is logarithmic and begins at 1, the fall that chance alone brings on average."
 	}
@@ -162,6 +162,22 @@ func evidenceCause(ev *calib.Evidence) string {
 	return fmt.Sprintf("%s (%s)", ev.Cause, ev.Variant)
 }
 
+// evidenceAgainst says what speaks against a cause in one line, its rivals together.
+func evidenceAgainst(ev *calib.Evidence) string {
+	var rivals, others []string
+	for _, c := range ev.Contradict {
+		if name, weight, is := strings.Cut(c, " explains as much"); is {
+			rivals = append(rivals, strings.TrimSpace(name)+weight)
+		} else {
+			others = append(others, "but "+c)
+		}
+	}
+	if len(rivals) > 0 {
+		others = append([]string{"rivals: " + strings.Join(rivals, ", ")}, others...)
+	}
+	return strings.Join(others, "; ")
+}
+
 // evidenceSize is how large a cause is; a gain's deviation from 1.
 func evidenceSize(ev *calib.Evidence) string {
 	x := calib.Estimate{Value: ev.Size, U: ev.Expanded, K: 1, Unit: ev.Unit, Known: true}
@@ -176,7 +192,10 @@ func evidenceSize(ev *calib.Evidence) string {
 
 // evidenceShare is a share of the deviation, in whole percent where it is large.
 func evidenceShare(ev *calib.Evidence) string {
-	if ev.Share < 0.095 {
+	switch {
+	case ev.Share < 0.0005:
+		return "under 0.1 %"
+	case ev.Share < 0.095:
 		return sharePercent(ev.Share)
 	}
 	return percent(ev.Share)

@@ -9,6 +9,7 @@ import (
 	xfont "golang.org/x/image/font"
 	"gonum.org/v1/gonum/stat/distuv"
 
+	"gonum.org/v1/plot"
 	"gonum.org/v1/plot/text"
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
@@ -16,11 +17,13 @@ import (
 	"rungproof/calib"
 )
 
-// figureResidual is one step's standardised residual of the main fit.
+// figureResidual is what is left of one step's reading, over its standard uncertainty.
 type figureResidual struct {
 	id    string
-	index int // in the plan's steps
-	z     float64
+	index int     // in the plan's steps
+	z     float64 // residual of the main fit, positive where the reading is too large, whatever its sign
+	plain float64 // the same of a detector and a bench without fault, inputs as stated
+	sign  float64 // of the expected reading
 	mark  draw.GlyphStyle
 }
 
@@ -35,12 +38,16 @@ func residualsFigure(e *calib.Evaluation) *figureSheet {
 	if len(points) < 3 || len(points) > figureMostResiduals {
 		return nil
 	}
-	s := &figureSheet{name: "residuals.png", title: "Residuals of the fit, and what the causes found make of them", height: 3.5 * 72}
+	s := &figureSheet{name: "residuals.png", title: "Residuals of the fit, and where each cause found shows", height: 3.5 * 72}
 	s.keys = figureResidualKeys(e, points, phases)
 	limit := largestByChance(len(points))
 	top := figureResidualPanel(points, figureByOrder(points), limit)
 	top.share = 160
 	s.panels = append(s.panels, top)
+	plain := slices.Clone(points)
+	for i := range plain {
+		plain[i].z = plain[i].plain
+	}
 	var shown []string
 	for _, ev := range evidenceOf(e) {
 		by := figureShowsBy(e, ev)
@@ -48,7 +55,7 @@ func residualsFigure(e *calib.Evaluation) *figureSheet {
 			continue
 		}
 		shown = append(shown, by.label)
-		panel := figureResidualPanel(points, by, limit)
+		panel := figureResidualPanel(plain, by, limit)
 		panel.head, panel.share = fit(firstUpper(evidenceCause(ev)), 72), 150
 		s.height += vg.Length(panel.share) + figurePanelGap
 		s.panels = append(s.panels, panel)
@@ -56,14 +63,28 @@ func residualsFigure(e *calib.Evaluation) *figureSheet {
 	if len(shown) == 0 {
 		s.title = "Residuals of the fit"
 	}
-	s.caption = "Each reading less what the fit makes of it, over the standard uncertainty of that difference: about 19 of 20 lie within ±2, and all but 1 in 400 within ±3."
-	if n := figureOutside(points, limit); n > 0 {
-		s.caption += fmt.Sprintf(" %s ringed: beyond ±%s, where the largest of so many would come by chance once in 20 times (Šidák).", figureAre(n, "step"), figureNumber(limit, 1))
+	s.caption = "Each reading less what the fit makes of it, over the standard uncertainty of that difference, positive where it reads too much: by chance about 19 of 20 lie within ±2, and all but 1 in 400 within ±3."
+	switch n := figureOutside(points, limit); {
+	case figureRinged(points, limit):
+		s.keys = append(s.keys, figureKey{words: "beyond ±" + figureNumber(limit, 1), mark: figureRing(3.2)})
+		s.caption += fmt.Sprintf(" %s ringed, beyond ±%s: the largest of so many comes there by chance once in 20 times (Šidák).", figureAre(n, "step"), figureNumber(limit, 1))
+	case n > 0:
+		s.caption += fmt.Sprintf(" %d of %d are beyond ±%s, where the largest of so many comes by chance once in 20 times (Šidák): too many to be outliers.", n, len(points), figureNumber(limit, 1))
 	}
 	if len(shown) > 0 {
-		s.caption += " Below, the same against what each cause found shows by, the thick lines being means; offset, gain and series resistance are in the fit and leave nothing here."
+		s.caption += " Below, by how much the readings differ from those of a detector and a bench without fault, inputs as stated, against what each cause found shows by; the thick lines are means."
 	}
 	return s
+}
+
+// figureRinged tells whether outliers are few enough to be ringed.
+func figureRinged(points []figureResidual, limit float64) bool {
+	n := figureOutside(points, limit)
+	return n > 0 && 5*n <= len(points)
+}
+
+func figureRing(inner vg.Length) draw.GlyphStyle {
+	return draw.GlyphStyle{Color: figureInk, Shape: draw.RingGlyph{}, Radius: inner + 2.5}
 }
 
 // largestByChance is what the largest of n standardised residuals exceeds once in
@@ -78,7 +99,9 @@ func figureResiduals(e *calib.Evaluation) (points []figureResidual, phases []flo
 	for i := range e.Result.Steps {
 		r := &e.Result.Steps[i]
 		if z := float64(r.Standardised); figureFinite(z) {
-			points = append(points, figureResidual{id: r.ID, index: r.Index, z: z})
+			sign := math.Copysign(1, r.Expected)
+			plain := (float64(r.Reading) - r.Expected) / math.Hypot(float64(r.UReading), r.UExpected)
+			points = append(points, figureResidual{id: r.ID, index: r.Index, z: z * sign, plain: plain * sign, sign: sign})
 			if phase := e.Plan.Steps[r.Index].Phase; !slices.Contains(phases, phase) {
 				phases = append(phases, phase)
 			}
@@ -140,9 +163,19 @@ func figureOutside(points []figureResidual, limit float64) int {
 // figureResidualPanel draws the residuals against a quantity; those beyond the
 // limit are ringed, and named where they are few.
 func figureResidualPanel(points []figureResidual, by *figureBy, limit float64) *figurePanel {
-	const named, bend = 6, 3
+	const named = 6
 	panel := newFigurePanel(1, by.label, "Residual / u")
-	points = slices.DeleteFunc(slices.Clone(points), func(p figureResidual) bool { return !figureFinite(by.value(p.index)) })
+	ringed := by.named && figureRinged(points, limit)
+	if !by.named {
+		panel.y = "Deviation / u"
+	}
+	points = slices.DeleteFunc(slices.Clone(points), func(p figureResidual) bool { return !figureFinite(by.value(p.index), p.z) })
+	if by.signed {
+		panel.y = "Signed dev. / u"
+		for i := range points {
+			points[i].z *= points[i].sign
+		}
+	}
 	at := by.places(points)
 	reach, x := 3.6, newFigureSpan()
 	for i, p := range points {
@@ -160,8 +193,9 @@ func figureResidualPanel(points []figureResidual, by *figureBy, limit float64) *
 		panel.Y.Tick.Marker = figureTicks(8)
 	}
 	if reach > 12 {
-		scale := figureBentScale{bend}
-		panel.Y.Scale, panel.Y.Tick.Marker = scale, scale
+		scale := figureBentScale{1}
+		panel.Y.Min, panel.Y.Max = -1.5*reach, 1.5*reach
+		panel.Y.Scale, panel.Y.Tick.Marker = scale, figureSparse{scale}
 	}
 	few := figureOutside(points, limit) <= named
 	panel.layers(func(a *figureArea) {
@@ -174,11 +208,11 @@ func figureResidualPanel(points []figureResidual, by *figureBy, limit float64) *
 		style := figureText(figureTickSize-1.5, xfont.WeightNormal, a.plot.X.Tick.Label.Handler)
 		for i, p := range points {
 			a.mark(p.mark, at[i], p.z)
-			if math.Abs(p.z) <= limit {
+			if !ringed || math.Abs(p.z) <= limit {
 				continue
 			}
-			a.DrawGlyph(draw.GlyphStyle{Color: figureInk, Shape: draw.RingGlyph{}, Radius: p.mark.Radius + 2.5}, a.at(at[i], p.z))
-			if few && by.named {
+			a.DrawGlyph(figureRing(p.mark.Radius), a.at(at[i], p.z))
+			if few {
 				figureNameBeside(a, style, at[i], p)
 			}
 		}
@@ -187,6 +221,22 @@ func figureResidualPanel(points []figureResidual, by *figureBy, limit float64) *
 		}
 	})
 	return panel
+}
+
+// figureSparse leaves out the labels of a bent scale that would touch that of zero.
+type figureSparse struct{ figureBentScale }
+
+// Ticks are those of the scale.
+func (s figureSparse) Ticks(low, high float64) []plot.Tick {
+	const room = 0.1
+	ticks := s.figureBentScale.Ticks(low, high)
+	zero := s.Normalize(low, high, 0)
+	for i, t := range ticks {
+		if t.Value != 0 && math.Abs(s.Normalize(low, high, t.Value)-zero) < room {
+			ticks[i].Label = ""
+		}
+	}
+	return ticks
 }
 
 // figureNameBeside writes a step's name on the side of its mark where there is room.

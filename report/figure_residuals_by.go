@@ -18,7 +18,9 @@ type figureBy struct {
 	label string
 	value func(index int) float64 // of a step, by its index in the plan; NaN for none
 	names func(index int) string  // nil for a quantity
-	named bool                    // outliers have their steps' names
+	named bool                    // outliers have their steps' names, and there are no means
+	// What does not turn with the reference, as an offset, shows in residuals with the sign of the reading.
+	signed bool
 
 	ticks     plot.Ticker // nil for those of a number
 	low, high float64
@@ -40,8 +42,8 @@ func figureByOrder(points []figureResidual) *figureBy {
 		value: func(index int) float64 { return float64(place[index]) }}
 }
 
-// figureShowsBy is the quantity by which a cause shows in the residuals of the
-// main fit; nil where it has none, or where the fit has it as a parameter.
+// figureShowsBy is the quantity by which a cause shows along the readings; nil where
+// it has none, and for offset and series resistance, which have a figure of their own.
 func figureShowsBy(e *calib.Evaluation, ev *calib.Evidence) *figureBy {
 	p := e.Plan
 	sights := map[int]calib.Sight{}
@@ -59,14 +61,18 @@ func figureShowsBy(e *calib.Evaluation, ev *calib.Evidence) *figureBy {
 	byPhase := func() *figureBy {
 		return inRow("Phase of the reference", func(s calib.Sight) float64 { return s.Phase }, func(s calib.Sight) string { return degrees(s.Phase) })
 	}
-	twoPhase := p.Detector.Reads == plan.TwoPhase // the residual along the reading is blind for what is across it
+	twoPhase := p.Detector.Reads == plan.TwoPhase // there these show across the reading
 	switch ev.Cause {
 	case diagnose.Compression:
 		return of("Share of full scale (%)", func(s calib.Sight) float64 { return 100 * s.Drop / s.Full })
 	case diagnose.Drift:
-		return of("Time since the first reading (min)", func(s calib.Sight) float64 { return s.Time / 60 })
+		by := of("Time since the first reading (min)", func(s calib.Sight) float64 { return s.Time / 60 })
+		by.signed = strings.HasPrefix(ev.Variant, "of the offset")
+		return by
 	case diagnose.RangeGain, diagnose.OffsetOfRange:
-		return inRow("Range", func(s calib.Sight) float64 { return s.Full }, func(s calib.Sight) string { return displayed(s.Full / p.Detector.ToRMS) })
+		by := inRow("Range", func(s calib.Sight) float64 { return s.Full }, func(s calib.Sight) string { return displayed(s.Full / p.Detector.ToRMS) })
+		by.signed = ev.Cause == diagnose.OffsetOfRange
+		return by
 	case diagnose.ResistivePick:
 		return inRow("Generator's amplitude", func(s calib.Sight) float64 { return s.EMF }, func(s calib.Sight) string { return amplitude(p, &p.Steps[s.Step]) })
 	case diagnose.Asymmetry, diagnose.ReferenceOff:
@@ -77,6 +83,9 @@ func figureShowsBy(e *calib.Evaluation, ev *calib.Evidence) *figureBy {
 		}
 		return byPhase()
 	case diagnose.Loading, diagnose.TopCapacity:
+		if twoPhase && ev.Unit == "F" {
+			return nil
+		}
 		if len(p.Frequencies) > 1 {
 			return inRow("Frequency", func(s calib.Sight) float64 { return s.Frequency }, func(s calib.Sight) string { return quantity.Plain(s.Frequency, "Hz") })
 		}

@@ -34,6 +34,7 @@ type page struct {
 	Voltages   string
 	Summary    grid
 	Findings   []calib.Finding
+	Evidence   grid
 	Figures    []picture
 	Gains      []grid
 	Steps      grid
@@ -68,7 +69,7 @@ func HTML(w io.Writer, e *calib.Evaluation, figures []Figure) error {
 		Verdict: markOf(e.Result.Verdict), Decided: decided(e),
 		Identity: identity(e.Plan), Voltages: voltages(e.Plan),
 		Summary: summary(e), Gains: gainTables(e), Steps: stepTable(e), Decisions: decisionTable(e),
-		Inputs: inputTable(e), Standards: standardTable(e), Budgets: budgetTables(e), MonteCarlo: monteCarloTable(e),
+		Evidence: evidenceTable(e), Inputs: inputTable(e), Standards: standardTable(e), Budgets: budgetTables(e), MonteCarlo: monteCarloTable(e),
 		Method: method(e), References: references(e),
 	}
 	if p.Title == "" {

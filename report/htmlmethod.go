@@ -26,6 +26,11 @@ func method(e *calib.Evaluation) []pair {
 		{"Error", "A step's error is its mean reading less the reading expected there with every input at its stated value: the standards are not corrected by the instrument under test. " +
 			"The fitted series resistance is the bench's and is counted as part of what is expected."},
 	}
+	if !r.NoSignal {
+		out = append(out, pair{"Causes", "What can be wrong with a detector, a bench or readings is a list of terms of the model. The readings are fitted as those of a detector and a bench without fault, and each term is tried beside that: a cause weighs by how far χ² falls. " +
+			"The weightiest is added and the others are tried again, as long as one is beyond chance. The level for that is shared out between the causes (Bonferroni) and within a cause between its variants (Šidák), so that readings without fault name any cause in under 5 % of all cases. " +
+			"Where the readings fit worse than their uncertainties say, falls are taken relative to what is left. Rivals stand beside a cause with their Akaike weights; of causes that explain as much, the one that is met most is named first."})
+	}
 	if len(r.Budgets) > 0 {
 		out = append(out, pair{"Uncertainty budgets", "Each line of a budget is one input that is independent of all others. Its contribution is its standard uncertainty times the change of the result with the input (the sensitivity); " +
 			"contributions add by their squares, and a share is one square of the sum of all. What an improvement would bring is found by doing the whole estimate again with that one standard uncertainty a fifth of what it is: " +
@@ -62,6 +67,11 @@ func references(e *calib.Evaluation) []string {
 		"EA-4/02 M:2022, Evaluation of the uncertainty of measurement in calibration",
 		"ISO/IEC 17025:2017, General requirements for the competence of testing and calibration laboratories",
 		"S. W. Director and R. A. Rohrer, The generalized adjoint network and network sensitivities, IEEE Trans. Circuit Theory 16 (1969) 318–323",
+	}
+	if !e.Result.NoSignal {
+		out = append(out, "H. Akaike, A new look at the statistical model identification, IEEE Trans. Automatic Control 19 (1974) 716–723",
+			"K. P. Burnham and D. R. Anderson, Model Selection and Multimodel Inference, 2nd edition, Springer, 2002",
+			"Z. Šidák, Rectangular confidence regions for the means of multivariate normal distributions, J. Amer. Statist. Assoc. 62 (1967) 626–633")
 	}
 	if e.Result.MonteCarlo != nil {
 		out = append(out, "JCGM 101:2008, Supplement 1 to the Guide — Propagation of distributions using a Monte Carlo method",

@@ -55,7 +55,7 @@ func (c *Calibration) on(fullScale, drifted float64) line {
 	gain2 := l.gain * l.gain
 	l.uu, l.gg, l.cross = uo*uo/gain2, variance/gain2, 2*g.Correlation*g.U*uo/gain2
 	l.from, l.to = g.From, g.To
-	l.above, l.below = string(Above)+", "+c.shown(g.To), string(Below)+", "+c.shown(g.From)
+	l.above, l.below = string(Above)+" ("+c.shown(g.To)+")", string(Below)+" ("+c.shown(g.From)+")"
 	return l
 }
 

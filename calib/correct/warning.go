@@ -1,8 +1,6 @@
 package correct
 
-import (
-	"rungproof/calib/fault"
-)
+import "rungproof/calib/fault"
 
 // Kind is a doubt about a corrected value, or why there is none; in the column
 // warning it stands as it is written here, some with a value behind.
@@ -10,15 +8,14 @@ type Kind string
 
 // The kinds of warning.
 const (
-	Failed       Kind = "failed calibration"
-	Overdue      Kind = "calibration overdue since"
-	Never        Kind = "range never calibrated"
-	Above        Kind = "above the largest calibrated"
-	Below        Kind = "below the smallest calibrated"
-	NoRange      Kind = "range cannot be read"         // no corrected value
-	NotANumber   Kind = "reading cannot be read"       // no corrected value
-	WrongNumber  Kind = "wrong number of cells"        // the row is left as it is, without the added cells
-	OutOfNumbers Kind = "too large a number to correct" // no corrected value
+	Failed     Kind = "failed calibration"
+	Overdue    Kind = "calibration overdue since" // and the last day it was valid
+	Never      Kind = "range never calibrated"    // no corrected value where no common gain is known
+	Above      Kind = "above the largest calibrated"
+	Below      Kind = "below the smallest calibrated"
+	NoRange    Kind = "range cannot be read"   // no corrected value
+	NotANumber Kind = "reading cannot be read" // no corrected value
+	Ragged     Kind = "wrong number of cells"  // the row is left as it is, without the added cells
 )
 
 // Warning is all of one kind in a file.
@@ -28,8 +25,8 @@ type Warning struct {
 	First fault.Fault // the first of them
 }
 
-// between parts two warnings in one cell. None has a separator of cells in it but
-// by quotation; see appendCell.
+// between parts two warnings in one cell. No warning has a comma, a semicolon, a
+// tab or a quotation mark in it, so that the cell needs no quotation.
 const between = " | "
 
 // warn counts a warning of the row at hand. Where faults are errors, it is the error.

@@ -26,6 +26,29 @@ type variant struct {
 	label string // what tells it from the others; may be empty
 	unit  string // of one unit of the term: "1", "V", "Ω", …
 	term  calib.Term
+	whole bool // all or nothing: a size far from one is something else
+	alone int  // 1 + the index of the one step that it moves; its term is made when it is wanted
+}
+
+// shape is a variant by its term.
+func shape(label, unit string, term calib.Term) variant {
+	return variant{label: label, unit: unit, term: term}
+}
+
+// on is the variant's term on a hypothesis.
+func (v *variant) on(h *calib.Hypothesis) calib.Term {
+	if v.alone > 0 {
+		return h.Along(v.alone - 1)
+	}
+	return v.term
+}
+
+// try scores the variant on a hypothesis.
+func (v *variant) try(h *calib.Hypothesis) (calib.Score, bool) {
+	if v.alone > 0 {
+		return h.TryOne(v.alone - 1)
+	}
+	return h.Try(v.term)
 }
 
 // Kinds of causes that are no other finding's kind.
@@ -115,15 +138,15 @@ var sentences = map[string]string{
 }
 
 func (b *bench) gain() cause {
-	return known(Gain, []variant{{"", "1", b.each(expected)}}, "the detector's",
+	return known(Gain, []variant{shape("", "1", b.each(expected))}, "the detector's",
 		"correct the readings by it, or have the detector adjusted.", "a generator or a ladder of another make: an error of theirs goes with them.")
 }
 
 func (b *bench) offset() cause {
-	c := known(Offset, []variant{{"", "V", b.still(func(*calib.Sight) complex128 { return 1 })}}, "the detector's",
+	c := known(Offset, []variant{shape("", "V", b.still(func(*calib.Sight) complex128 { return 1 }))}, "the detector's",
 		"zero the detector's output with the input shorted, or correct the readings by it.", "a reading with the source off: an offset stays.")
 	if b.p.Detector.Reads == plan.TwoPhase {
-		c.variants = append(c.variants, variant{"in quadrature", "V", b.still(func(*calib.Sight) complex128 { return 1i })})
+		c.variants = append(c.variants, variant{label: "in quadrature", unit: "V", term: b.still(func(*calib.Sight) complex128 { return 1i })})
 	}
 	return c
 }
@@ -136,7 +159,7 @@ func (b *bench) series() cause {
 		}
 		return circuit.Variable{Element: circuit.ArmStray, Arm: s.Tap}
 	})
-	return known(Series, []variant{{"", "Ω", term}}, "the bench's",
+	return known(Series, []variant{shape("", "Ω", term)}, "the bench's",
 		"look for a lead or contact inside the detector's taps; shorten it, clean it, or state it as a [[wire]].",
 		"a short in place of the tapped arm: what is left then is the lead's.")
 }
@@ -145,7 +168,7 @@ func (b *bench) offsetOfRange() cause {
 	if b.ranges() < 2 {
 		return cause{}
 	}
-	return known(OffsetOfRange, []variant{{"", "1", b.still(func(s *calib.Sight) complex128 { return complex(s.Full, 0) })}}, "the detector's",
+	return known(OffsetOfRange, []variant{shape("", "1", b.still(func(s *calib.Sight) complex128 { return complex(s.Full, 0) }))}, "the detector's",
 		`zero the output on each range, or fit it: offset = "share of range" in [fit].`, "one small reading on two ranges: an offset in volts stays the same.")
 }
 
@@ -171,7 +194,7 @@ func (b *bench) returnSeries() cause {
 		return cause{}
 	}
 	term := b.e.ByNumber(func(*plan.Step) circuit.Variable { return circuit.Variable{Element: circuit.ReturnSeenLead} })
-	return cause{kind: ReturnSeries, variants: []variant{{"", "Ω", term}}, whose: "the bench's",
+	return cause{kind: ReturnSeries, variants: []variant{shape("", "Ω", term)}, whose: "the bench's",
 		do: "take the detector's low side to the ladder's common itself.", decides: "the detector's low side moved from the generator to the ladder's common."}
 }
 
@@ -181,9 +204,9 @@ func (b *bench) coupling() cause {
 	if b.p.Detector.Reads == plan.Magnitude || b.phases() < 2 {
 		return cause{}
 	}
-	variants := []variant{{"in phase", "V", b.each(func(s *calib.Sight) complex128 { return b.turned(s, 1) })}}
+	variants := []variant{shape("in phase", "V", b.each(func(s *calib.Sight) complex128 { return b.turned(s, 1) }))}
 	quadrature := b.each(func(s *calib.Sight) complex128 { return b.turned(s, 1i) })
-	return known(Coupling, append(variants, variant{"in quadrature", "V", quadrature}), "the bench's",
+	return known(Coupling, append(variants, variant{label: "in quadrature", unit: "V", term: quadrature}), "the bench's",
 		"keep the reference's lead away from the signal's; screen it.", "a reading with the source off and the reference on: the coupling is still there, and turns with the reference.")
 }
 
@@ -205,7 +228,7 @@ func (b *bench) phases() int {
 }
 
 func (b *bench) pickUp() cause {
-	return known(ResistivePick, []variant{{"", "1", b.each(func(s *calib.Sight) complex128 { return complex(s.EMF, 0) * s.Along })}}, "the bench's",
+	return known(ResistivePick, []variant{shape("", "1", b.each(func(s *calib.Sight) complex128 { return complex(s.EMF, 0) * s.Along }))}, "the bench's",
 		"part the generator's leads from the detector's; one common point.", "a short in place of the tapped arm: a pick-up stays, a resistance in series with the arm stays too, an offset does not grow with the amplitude.")
 }
 
@@ -216,7 +239,7 @@ func (b *bench) capacitive() cause {
 		return cause{}
 	}
 	term := b.each(func(s *calib.Sight) complex128 { return b.turned(s, complex(0, s.EMF*s.Frequency*2*math.Pi)) })
-	return known(CapacitivePck, []variant{{"", "s", term}}, "the bench's",
+	return known(CapacitivePck, []variant{shape("", "s", term)}, "the bench's",
 		"screen the top resistor and the leads from the detector's.", "the same step at another frequency: it grows with it.")
 }
 
@@ -233,7 +256,7 @@ func (b *bench) rangeGain() cause {
 			return expected(s)
 		})
 		if nonZero(term) {
-			c.variants = append(c.variants, variant{"the " + volts(full/b.p.Detector.ToRMS) + " range", "1", term})
+			c.variants = append(c.variants, variant{label: "the " + volts(full/b.p.Detector.ToRMS) + " range", unit: "1", term: term})
 		}
 	}
 	return c
@@ -252,7 +275,7 @@ func (b *bench) nonLinear() cause {
 	power := func(n float64) calib.Term {
 		return b.each(func(s *calib.Sight) complex128 { return expected(s) * complex(math.Pow(s.Drop/s.Full, n), 0) })
 	}
-	return known(Compression, []variant{{"with the square of the share of range", "1", power(2)}, {"with the share of range", "1", power(1)}}, "the detector's",
+	return known(Compression, []variant{shape("with the square of the share of range", "1", power(2)), shape("with the share of range", "1", power(1))}, "the detector's",
 		"use less of each range, or have it adjusted.", "one drop on the range where it fills it and on the next larger one.")
 }
 
@@ -264,10 +287,10 @@ func (b *bench) loading() cause {
 		for i := range term.Add { // one unit: all of the conductance stated once more
 			term.Add[i] *= complex(-r, 0)
 		}
-		c.variants = append(c.variants, variant{"conductance of the input beyond the stated", "1", term})
+		c.variants = append(c.variants, variant{label: "conductance of the input beyond the stated", unit: "1", term: term})
 	}
 	term := b.e.ByNumber(func(*plan.Step) circuit.Variable { return circuit.Variable{Element: circuit.InputC} })
-	c.variants = append(c.variants, variant{"capacitance of the input beyond the stated", "F", term})
+	c.variants = append(c.variants, variant{label: "capacitance of the input beyond the stated", unit: "F", term: term})
 	return c
 }
 
@@ -275,7 +298,7 @@ func (b *bench) topCapacity() cause {
 	for i := range b.p.Arms {
 		if b.p.Arms[i].Place == plan.Series {
 			term := b.e.ByNumber(func(*plan.Step) circuit.Variable { return circuit.Variable{Element: circuit.ArmC, Arm: i} })
-			return known(TopCapacity, []variant{{"of " + b.p.Arms[i].Name, "F", term}}, "the bench's",
+			return known(TopCapacity, []variant{shape("of "+b.p.Arms[i].Name, "F", term)}, "the bench's",
 				"state the resistor's capacitance; keep its ends apart.", "the same step at another frequency: it grows with it.")
 		}
 	}
@@ -292,7 +315,7 @@ func (b *bench) oneSetting() cause {
 			continue
 		}
 		for k, nominal := range a.Nominal {
-			c.variants = append(c.variants, variant{fmt.Sprintf("%s at %s", a.Name, nominal), "1", b.each(func(s *calib.Sight) complex128 {
+			c.variants = append(c.variants, variant{label: fmt.Sprintf("%s at %s", a.Name, nominal), unit: "1", term: b.each(func(s *calib.Sight) complex128 {
 				if s.Set[arm] != k {
 					return 0
 				}
@@ -314,7 +337,7 @@ func (b *bench) swapped() cause {
 		for k := range a.Settings {
 			for l := k + 1; l < len(a.Settings); l++ {
 				ratio := a.Settings[l].X / a.Settings[k].X
-				c.variants = append(c.variants, variant{fmt.Sprintf("%s at %s and at %s", a.Name, a.Nominal[k], a.Nominal[l]), "1", b.each(func(s *calib.Sight) complex128 {
+				c.variants = append(c.variants, variant{label: fmt.Sprintf("%s at %s and at %s", a.Name, a.Nominal[k], a.Nominal[l]), unit: "1", whole: true, term: b.each(func(s *calib.Sight) complex128 {
 					switch s.Set[arm] {
 					case k:
 						return expected(s) * complex(ratio-1, 0)
@@ -333,7 +356,7 @@ func (b *bench) asymmetry() cause {
 	if b.p.Detector.Reads != plan.InPhase || b.phases() < 2 {
 		return cause{}
 	}
-	return known(Asymmetry, []variant{{"", "1", b.each(func(s *calib.Sight) complex128 { return complex(cmplx.Abs(expected(s)), 0) })}}, "open",
+	return known(Asymmetry, []variant{shape("", "1", b.each(func(s *calib.Sight) complex128 { return complex(cmplx.Abs(expected(s)), 0) }))}, "open",
 		"look for an earth loop or a harmonic that the detector rectifies. "+EarthCaution, "the detector on batteries or through a differential input: an earth loop's part goes.")
 }
 
@@ -344,7 +367,7 @@ func (b *bench) rectified() cause {
 		return cause{}
 	}
 	term := b.each(func(s *calib.Sight) complex128 { return complex(riceExcess(s.Drop, s.Noise), 0) })
-	return known(Rectified, []variant{{"noise power beyond the stated", "1", term}}, "the detector's",
+	return known(Rectified, []variant{shape("noise power beyond the stated", "1", term)}, "the detector's",
 		"read in phase, lengthen the time constant, or state the noise as it is.", "the weakest step with four times the time constant: the excess falls to a quarter.")
 }
 
@@ -361,7 +384,7 @@ func (b *bench) notSettled() cause {
 	if !some {
 		return cause{}
 	}
-	return known(NotSettled, []variant{{"", "1", term}}, "the readings'", "wait as long as `rungproof expect` says after each change.", "the worst step once more after twice the wait.")
+	return known(NotSettled, []variant{shape("", "1", term)}, "the readings'", "wait as long as `rungproof expect` says after each change.", "the worst step once more after twice the wait.")
 }
 
 func (b *bench) drift() cause {
@@ -381,8 +404,8 @@ func (b *bench) drift() cause {
 		return complex(s.Time/last, 0)
 	}
 	return known(Drift, []variant{
-		{"of the gain, over the run", "1", b.each(func(s *calib.Sight) complex128 { return at(s) * expected(s) })},
-		{"of the offset, over the run", "V", b.still(at)},
+		shape("of the gain, over the run", "1", b.each(func(s *calib.Sight) complex128 { return at(s) * expected(s) })),
+		shape("of the offset, over the run", "V", b.still(at)),
 	}, "the detector's", "let the bench warm up; read the first steps once more at the end.", "the first step once more at the end.")
 }
 
@@ -400,7 +423,7 @@ func (b *bench) referenceOff() cause {
 	if !nonZero(term) {
 		return cause{}
 	}
-	return known(ReferenceOff, []variant{{"", "rad", term}}, "the readings'", "turn the reference to maximum again, by the null at 90°.", "a reading at 90° and one at 270°: they differ in sign, not in size.")
+	return known(ReferenceOff, []variant{shape("", "rad", term)}, "the readings'", "turn the reference to maximum again, by the null at 90°.", "a reading at 90° and one at 270°: they differ in sign, not in size.")
 }
 
 // skewed is the second axis not at right angles: y takes a share of x.
@@ -409,7 +432,7 @@ func (b *bench) skewed() cause {
 		return cause{}
 	}
 	return known(Skewed, []variant{
-		{"", "rad", b.still(func(s *calib.Sight) complex128 { return complex(0, real(expected(s))) })},
+		shape("", "rad", b.still(func(s *calib.Sight) complex128 { return complex(0, real(expected(s))) })),
 	}, "the detector's", "have its phase adjusted.", "the reference turned by 90°: x and y change places.")
 }
 
@@ -419,12 +442,7 @@ func (b *bench) outlier() cause {
 		if b.s[i].Left {
 			continue
 		}
-		term := calib.Term{Add: make([]complex128, len(b.s))}
-		term.Add[i] = 1
-		if b.p.Detector.Reads == plan.TwoPhase {
-			term.Add[i] = b.s[i].Along / complex(math.Max(cmplx.Abs(b.s[i].Along), 1e-300), 0)
-		}
-		c.variants = append(c.variants, variant{"step " + b.p.Steps[b.s[i].Step].ID, "V", term})
+		c.variants = append(c.variants, variant{label: "step " + b.p.Steps[b.s[i].Step].ID, unit: "V", alone: i + 1})
 	}
 	return c
 }

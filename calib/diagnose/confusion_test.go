@@ -79,7 +79,7 @@ func sizeOfOne(t *testing.T, p *plan.Plan, tr trial) float64 {
 	if err != nil {
 		t.Fatal(err)
 	}
-	term, err := find(causes(e), Fault{Kind: tr.kind, Variant: tr.variant})
+	term, err := find(causes(e), h, Fault{Kind: tr.kind, Variant: tr.variant})
 	if err != nil {
 		t.Fatal(err)
 	}

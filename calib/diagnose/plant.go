@@ -29,10 +29,14 @@ func Plant(p *plan.Plan, faults []Fault) ([]calib.Added, error) {
 	if err != nil {
 		return nil, err
 	}
+	h, err := e.Suppose()
+	if err != nil {
+		return nil, err
+	}
 	all := causes(e)
 	var out []calib.Added
 	for _, f := range faults {
-		term, err := find(all, f)
+		term, err := find(all, h, f)
 		if err != nil {
 			return nil, err
 		}
@@ -42,7 +46,7 @@ func Plant(p *plan.Plan, faults []Fault) ([]calib.Added, error) {
 }
 
 // find looks up the term of a fault.
-func find(all []cause, f Fault) (calib.Term, error) {
+func find(all []cause, h *calib.Hypothesis, f Fault) (calib.Term, error) {
 	var kinds, labels []string
 	for _, c := range all {
 		kinds = append(kinds, c.kind)
@@ -51,7 +55,7 @@ func find(all []cause, f Fault) (calib.Term, error) {
 		}
 		for _, v := range c.variants {
 			if f.Variant == "" || v.label == f.Variant {
-				return v.term, nil
+				return v.on(h), nil
 			}
 			labels = append(labels, v.label)
 		}

@@ -61,7 +61,7 @@ func search(e *calib.Evaluation) (found []ranked, clean, left *calib.Hypothesis)
 		}
 		best := &scores[0].ranked
 		best.rivals = rivals(best, scores)
-		terms = append(terms, best.variant.term)
+		terms = append(terms, best.variant.on(left))
 		used[best.kind+best.variant.label] = true
 		found, left = append(found, *best), next
 	}
@@ -89,7 +89,7 @@ const finalists = 6
 func refit(e *calib.Evaluation, terms []calib.Term, h *calib.Hypothesis, scores []scored) *calib.Hypothesis {
 	for i := range scores[:min(finalists, len(scores))] {
 		s := &scores[i]
-		next, err := e.Suppose(append(terms[:len(terms):len(terms)], s.variant.term)...)
+		next, err := e.Suppose(append(terms[:len(terms):len(terms)], s.variant.on(h))...)
 		if err != nil {
 			s.score = math.Inf(-1)
 			continue
@@ -122,8 +122,8 @@ func contest(h *calib.Hypothesis, all []cause, used map[string]bool) []scored {
 			if used[c.kind+v.label] {
 				continue
 			}
-			s, ok := h.Try(v.term)
-			if !ok {
+			s, ok := v.try(h)
+			if !ok || (v.whole && math.Abs(s.Size-1) > math.Max(0.15, 3*s.U)) {
 				continue
 			}
 			tried++

@@ -71,6 +71,8 @@ func (s *store) Check(ctx context.Context) (Report, error) {
 		go func() {
 			defer workers.Done()
 			for i := range next {
+				// A span is short: what watches for a cancellation would cost more than it.
+				ctx := context.WithoutCancel(ctx)
 				if errs[w] = s.read(ctx, func(q querier) error { return parts[i].read(ctx, q, spans[i]) }); errs[w] != nil {
 					cancel()
 					return
@@ -105,7 +107,7 @@ type part struct {
 
 func (p *part) read(ctx context.Context, q querier, s span) error {
 	args := []any{s.first, s.last}
-	loaded, err := load(ctx, q, choice{where: byID + "BETWEEN $1 AND $2", args: args, order: "e.id", content: true})
+	loaded, stray, err := load(ctx, q, choice{where: byID + "BETWEEN $1 AND $2", args: args, order: "e.id", content: true})
 	if err != nil {
 		return err
 	}
@@ -113,9 +115,7 @@ func (p *part) read(ctx context.Context, q querier, s span) error {
 	if err != nil {
 		return err
 	}
-	if p.stray, err = strayRanges(ctx, q, args); err != nil {
-		return err
-	}
+	p.stray = stray
 	for i := 0; i < len(loaded) || len(seals) > 0; {
 		var at place
 		if i < len(loaded) && (len(seals) == 0 || loaded[i].ID <= seals[0].id) {
@@ -153,7 +153,7 @@ func (p *part) shrink() {
 
 // good tells of an entry that is what was logged at its place.
 func (p *place) good() bool {
-	return p.entry && p.seal && p.damage == nil && p.computed == p.sealed && p.stored == p.sealed
+	return p.id >= 1 && p.entry && p.seal && p.damage == nil && p.computed == p.sealed && p.stored == p.sealed
 }
 
 func (p *place) follows(before *place) bool {
@@ -181,23 +181,6 @@ func readSeals(ctx context.Context, q querier, args []any) (out []sealRow, err e
 			copy(s.hash[:], b)
 		}
 		out = append(out, s)
-	}
-	return out, errors.Join(r.Err(), r.Close())
-}
-
-func strayRanges(ctx context.Context, q querier, args []any) (out []int64, err error) {
-	r, err := q.query(ctx, `SELECT DISTINCT entry FROM log_range g WHERE entry BETWEEN $1 AND $2
-		AND NOT EXISTS (SELECT 1 FROM log_entry e WHERE e.id = g.entry) ORDER BY entry`, args...)
-	if err != nil {
-		return nil, err
-	}
-	defer r.Close()
-	for r.Next() {
-		var id int64
-		if err := r.Scan(&id); err != nil {
-			return nil, err
-		}
-		out = append(out, id)
 	}
 	return out, errors.Join(r.Err(), r.Close())
 }

@@ -15,7 +15,7 @@ import (
 func (s *store) each(ctx context.Context, content, by bool, do func(*Entry) error) error {
 	return s.read(ctx, func(q querier) error {
 		for last := int64(0); ; {
-			loaded, err := load(ctx, q, choice{where: "e.id > $1", args: []any{last}, order: fmt.Sprintf("e.id LIMIT %d", chunk), content: content, by: by})
+			loaded, _, err := load(ctx, q, choice{where: "e.id > $1", args: []any{last}, order: fmt.Sprintf("e.id LIMIT %d", chunk), content: content, by: by})
 			if err != nil || len(loaded) == 0 {
 				return err
 			}

@@ -46,7 +46,7 @@ func judge(parts []part) Report {
 		switch {
 		case at.id < 1:
 		case at.seal && at.id > before.id+1:
-			r.find(Removed, before.id+1, at.id-1, "%s removed, with the seal", subject(before.id+1, at.id-1))
+			r.find(Removed, before.id+1, at.id-1, "%s removed, seal and all", subject(before.id+1, at.id-1))
 		case good && sound && !at.follows(&before):
 			if before.id == 0 {
 				r.find(Broken, at.id, at.id, "entry 1 is not the first of its chain: entries before it were removed")
@@ -110,7 +110,9 @@ func (r *Report) name(odds []odd) {
 	for i := range odds {
 		o := &odds[i]
 		switch {
-		case o.entry && o.from == o.id && o.id != 0:
+		case o.id < 1:
+			r.find(Added, o.id, o.id, "entry %d was added: it was never logged", o.id)
+		case o.entry && o.from == o.id:
 			r.find(Altered, o.id, o.id, "entry %d was altered: its hash is not that of its content, which is as logged", o.id)
 		case o.entry && o.from != 0:
 			r.Findings = append(r.Findings, Finding{Kind: Moved, First: o.id, Last: o.id, from: o.from}) // gather makes the sentence

@@ -47,6 +47,11 @@ func (s *store) Import(ctx context.Context, from io.Reader) (added int64, err er
 		added = last - first
 		return nil
 	}, func(q querier) (bool, error) { return sealed(ctx, q, last, hash) })
+	var unsure *Unsure
+	if errors.As(err, &unsure) {
+		unsure.Entry.ID, unsure.Entry.Hash = last, hash
+		return 0, unsure
+	}
 	if err != nil {
 		return 0, fmt.Errorf("nothing was imported: %w", err)
 	}

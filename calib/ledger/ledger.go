@@ -18,7 +18,7 @@ import (
 	"strings"
 )
 
-// Store is a log.
+// Store is a log. It may be used by several goroutines at once.
 type Store interface {
 	// Add logs one calibration and returns the entry once it is safe on disk. After an
 	// error nothing was added, but for *Unsure.
@@ -36,7 +36,8 @@ type Store interface {
 	// ExportCSV writes the columns, one entry a row, for a spreadsheet.
 	ExportCSV(context.Context, io.Writer) error
 	// Import appends an exported log, all of it or nothing, and tells how many entries
-	// it added. The log must be empty or hold the first entries of the same chain.
+	// it added. The log must be empty or hold the first entries of the same chain. After
+	// an error nothing was, but for *Unsure.
 	Import(context.Context, io.Reader) (added int64, err error)
 	// Place names the log, without a password.
 	Place() string

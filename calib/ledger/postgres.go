@@ -5,6 +5,7 @@ import (
 	"errors"
 	"fmt"
 	"net/url"
+	"strings"
 	"sync"
 	"time"
 
@@ -195,7 +196,7 @@ func (p *postgres) explain(conn *pgx.Conn, err error) error {
 	var refused *pgconn.PgError
 	if errors.As(err, &refused) {
 		switch {
-		case refused.Code[:2] == "57" || refused.Code[:2] == "08": // operator intervention; connection exception
+		case strings.HasPrefix(refused.Code, "57P") || strings.HasPrefix(refused.Code, "08"): // the server stops; connection exception
 			return fmt.Errorf("%w: %w", ErrLost, err)
 		case refused.Code == "53100": // disk full
 			return fmt.Errorf("%w: %w", ErrFull, err)

@@ -6,6 +6,7 @@ import (
 	"encoding/json"
 	"errors"
 	"fmt"
+	"slices"
 	"strings"
 	"time"
 )
@@ -66,8 +67,9 @@ type choice struct {
 	by      bool   // which entry supersedes it
 }
 
-// load reads the entries chosen.
-func load(ctx context.Context, q querier, c choice) ([]row, error) {
+// load reads the entries chosen. Stray are ids for which there are gains by range and
+// no entry, where the choice is by id.
+func load(ctx context.Context, q querier, c choice) (out []row, stray []int64, err error) {
 	extra := ""
 	if c.content {
 		extra += ", plan, readings, result"
@@ -77,31 +79,55 @@ func load(ctx context.Context, q querier, c choice) ([]row, error) {
 	}
 	r, err := q.query(ctx, `SELECT `+columns+extra+` FROM log_entry e WHERE `+c.where+` ORDER BY `+c.order, c.args...)
 	if err != nil {
-		return nil, err
+		return nil, nil, err
 	}
 	defer r.Close()
-	var out []row
 	at := map[int64]int{}
+	var names standards
 	for r.Next() {
 		out = append(out, row{})
-		if err := out[len(out)-1].scan(r, c); err != nil {
-			return nil, err
+		if err := out[len(out)-1].scan(r, c, &names); err != nil {
+			return nil, nil, err
 		}
 		at[out[len(out)-1].ID] = len(out) - 1
 	}
 	if err := errors.Join(r.Err(), r.Close()); err != nil {
-		return nil, err
+		return nil, nil, err
 	}
-	return out, loadRanges(ctx, q, c, func(id int64) *row {
+	err = loadRanges(ctx, q, c, func(id int64) *row {
 		if i, ok := at[id]; ok {
 			return &out[i]
 		}
+		if len(stray) == 0 || stray[len(stray)-1] != id {
+			stray = append(stray, id)
+		}
 		return nil
 	})
+	return out, stray, err
+}
+
+// standards is a list of names as text, and as it was read. Most entries have the list
+// of the entry before.
+type standards struct {
+	text  string
+	names []string
+	ok    bool
+}
+
+func (s *standards) read(text string) {
+	if s.text == text {
+		return
+	}
+	*s = standards{text: text}
+	if json.Unmarshal([]byte(text), &s.names) == nil {
+		again, err := json.Marshal(s.names)
+		s.ok = err == nil && string(again) == text && s.names != nil
+		s.names = slices.Clip(s.names) // entries share it
+	}
 }
 
 // scan reads one row. What can only stand there by another hand is its damage.
-func (w *row) scan(r rows, c choice) error {
+func (w *row) scan(r rows, c choice, names *standards) error {
 	var logged, standards string
 	var supersedes, by *int64
 	var p [3][3]*float64
@@ -134,9 +160,8 @@ func (w *row) scan(r rows, c choice) error {
 	if w.Logged, err = time.Parse(timeLayout, logged); err != nil || w.Logged.Format(timeLayout) != logged {
 		hurt("the time logged is %q", logged)
 	}
-	if err := json.Unmarshal([]byte(standards), &w.Standards); err != nil {
-		hurt("the list of standards is %q", standards)
-	} else if again, _ := json.Marshal(append([]string{}, w.Standards...)); string(again) != standards {
+	names.read(standards)
+	if w.Standards = names.names; !names.ok {
 		hurt("the list of standards is %q", standards)
 	}
 	for i, into := range []**Parameter{&w.Gain, &w.Offset, &w.SeriesResistance} {
@@ -180,8 +205,8 @@ func (w *row) open(packed [3][]byte, hurt func(string, ...any)) {
 
 // loadRanges reads the gains by range of the entries chosen.
 func loadRanges(ctx context.Context, q querier, c choice, entry func(int64) *row) error {
-	// Where the choice is by entry alone, the ranges are chosen by it too: Check reads
-	// those that belong to no entry so.
+	// Where the choice is by id, the ranges are chosen so too: those of no entry are read
+	// with the others.
 	from := `log_range g WHERE g.entry IN (SELECT e.id FROM log_entry e WHERE ` + c.where + `)`
 	if strings.HasPrefix(c.where, byID) {
 		from = `log_range g WHERE ` + strings.ReplaceAll(c.where, "e.id", "g.entry")

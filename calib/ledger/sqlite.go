@@ -9,6 +9,7 @@ import (
 	"net/url"
 	"os"
 	"path/filepath"
+	"strings"
 	"time"
 
 	"modernc.org/sqlite"
@@ -48,7 +49,8 @@ func openSQLite(ctx context.Context, path string) (database, error) {
 			options.Set("immutable", "1") // a folder that takes no file is no hindrance
 		}
 	}
-	f.db, err = sql.Open("sqlite", (&url.URL{Scheme: "file", Path: absolute, RawQuery: options.Encode()}).String())
+	slashed := "/" + strings.TrimPrefix(filepath.ToSlash(absolute), "/")
+	f.db, err = sql.Open("sqlite", (&url.URL{Scheme: "file", Path: slashed, RawQuery: options.Encode()}).String())
 	if err != nil {
 		return nil, err
 	}

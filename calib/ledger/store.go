@@ -3,6 +3,7 @@ package ledger
 import (
 	"context"
 	"crypto/sha256"
+	"errors"
 	"fmt"
 	"time"
 )
@@ -31,7 +32,8 @@ func (s *store) Add(ctx context.Context, r Record) (Entry, error) {
 		return sealed(ctx, q, e.ID, e.Hash)
 	})
 	if err != nil {
-		if unsure, ok := err.(*Unsure); ok {
+		var unsure *Unsure
+		if errors.As(err, &unsure) {
 			unsure.Entry = e
 			return Entry{}, unsure
 		}
@@ -40,11 +42,11 @@ func (s *store) Add(ctx context.Context, r Record) (Entry, error) {
 	return e, nil
 }
 
-// Unsure is the error of an Add whose connection was lost while the database was
-// committing, and that could not connect again to ask. The entry is whole in the log
-// or absent.
+// Unsure is the error of an Add or an Import whose connection was lost while the
+// database was committing, and that could not connect again to ask. What was added is
+// whole in the log or absent.
 type Unsure struct {
-	Entry Entry // as it is if it is there
+	Entry Entry // as it is if it is there; of an import the last one's ID and Hash
 	Cause error
 }
 
@@ -131,7 +133,7 @@ func (s *store) Show(ctx context.Context, id int64) (Entry, error) {
 // entries reads what is chosen and takes no damaged entry.
 func (s *store) entries(ctx context.Context, c choice) (out []Entry, err error) {
 	err = s.read(ctx, func(q querier) error {
-		rows, err := load(ctx, q, c)
+		rows, _, err := load(ctx, q, c)
 		for i := range rows {
 			if rows[i].damage != nil {
 				return fmt.Errorf("entry %d of the log was altered: %w; check the log", rows[i].ID, rows[i].damage)
