@@ -21,6 +21,7 @@ type Truth struct {
 	Series    float64         // Ω
 	Phase     float64         // rad, two-phase: the reference's phase
 	Fine      bool            // the display rounds nothing
+	Still     bool            // no noise, no scatter, every input as stated
 
 	Added        []Added // further terms of the model
 	Interference float64 // V rms, of further white scatter on each reading
@@ -65,7 +66,9 @@ func (s *Simulator) Readings(t Truth, random *rand.Rand) *reading.Set {
 	m := s.m
 	nu := m.forward.stated()
 	for i, in := range m.forward.inputs {
-		nu[i] += in.U * draw(in.Shape, random)
+		if !t.Still {
+			nu[i] += in.U * draw(in.Shape, random)
+		}
 	}
 	m.forward.compute(nu, t.Series)
 	set := &reading.Set{File: "simulated"}
@@ -76,7 +79,10 @@ func (s *Simulator) Readings(t Truth, random *rand.Rand) *reading.Set {
 		s.errors = append(s.errors, m.trueError(i, nu, &t))
 		still := m.still(i, nu, &t)
 		for k := range m.plan.Steps[o.step].Repeats {
-			z := m.one(i, nu, &t, random)
+			z := still
+			if !t.Still {
+				z = m.one(i, nu, &t, random)
+			}
 			if k == 0 && i > 0 && t.Lean != 0 {
 				z += complex(t.Lean, 0) * (before - still)
 			}

@@ -103,7 +103,7 @@ func TestBudgetFigure(t *testing.T) {
 		s.panels[0].foot != "amplitude 20 V five times better known: U would be 0.042 % instead of 0.076 %" {
 		t.Errorf("%d panels, the first says %q and %q", len(s.panels), s.panels[0].head, s.panels[0].foot)
 	}
-	if got, want := figureNames(coarseFigures(t, e)), "readings errors unexplained joint budget"; got != want {
+	if got, want := figureNames(coarseFigures(t, e)), "readings errors unexplained joint evidence residuals budget"; got != want {
 		t.Errorf("figures %s, want %s", got, want)
 	}
 	for _, b := range e.Result.Budgets {

@@ -57,19 +57,19 @@ func TestFiguresOfAwkwardPlans(t *testing.T) {
 		{"a single step", figureSource(t, "one-amplitude", figureBox, `"10 kΩ"`), figureRows(698),
 			"readings errors unexplained", "do not determine the line"},
 		{"nothing but source off", figureSource(t, "one-amplitude", `"200 mV"`, `"0 V"`, `range     = "auto"`, `range = "10 µV"`), figureRows(.1, .2, .1, .1, .1, .2, .1, .1, .1, .1),
-			"errors unexplained", "no current flows"},
-		{"every reading zero", figureSource(t, "one-amplitude"), figureRows(make([]float64, 10)...), "errors unexplained", ""},
+			"errors unexplained residuals", "no current flows"},
+		{"every reading zero", figureSource(t, "one-amplitude"), figureRows(make([]float64, 10)...), "errors unexplained residuals", ""},
 		{"a reading of zero", figureSource(t, "one-amplitude"), figureRows(698, 352, 142, 70.4, 35.3, 14.2, 7.23, 3.7, 1.58, 0),
-			"readings errors unexplained joint", "1 step with nothing applied, or read as exactly zero"},
+			"readings errors unexplained joint evidence residuals", "1 step with nothing applied, or read as exactly zero"},
 		{"nothing judged", figureSource(t, "one-amplitude", `limits = { reading = "3 %", range = "1 %" }`, ""), figureRows(figureTen...),
-			"readings unexplained joint", ""},
-		{"steps without readings", figureSource(t, "one-amplitude"), figureRows(figureTen[:3]...), "readings errors unexplained joint", ""},
+			"readings unexplained joint residuals", ""},
+		{"steps without readings", figureSource(t, "one-amplitude"), figureRows(figureTen[:3]...), "readings errors unexplained joint residuals", ""},
 		{"far from the limits", figureSource(t, "one-amplitude"), figureRows(698, 352, 142, 70.4, 35.3, 14.2, 7.23, 3.7, 1.58, 2.5),
-			"readings errors unexplained joint", "An arrow stands for an error farther out"},
+			"readings errors unexplained joint evidence residuals", "An arrow stands for an error farther out"},
 		{"offset a share of range", figureSource(t, "arrival", "[decision]", "[fit]\noffset = \"share of range\"\n[decision]"), figureRead(t, "arrival"),
-			"readings errors unexplained joint", "each range has a line of its own"},
+			"readings errors unexplained joint evidence residuals", "each range has a line of its own"},
 		{"a gain for each frequency", figureSource(t, "quadrature", "[decision]", "[fit]\ngain = \"per frequency\"\n[decision]"), figureRead(t, "quadrature"),
-			"readings errors unexplained joint frequency", ""},
+			"readings errors unexplained joint evidence residuals frequency", ""},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			figures := coarseFigures(t, figureEvaluation(t, c.plan, c.rows))
@@ -121,6 +121,9 @@ func TestFiguresOfSpoiltResults(t *testing.T) {
 		"one current, never passing":  func(r *calib.Result) { r.Condition = nil },
 		"one current, far from here":  func(r *calib.Result) { r.Condition = &calib.Interval{From: 100, To: 200} },
 		"one current, always passing": func(r *calib.Result) { *(*float64)(&r.Condition.To) = inf },
+		"residuals":                   func(r *calib.Result) { eachStep(r, func(s *calib.StepResult) { *(*float64)(&s.Standardised) = inf }) },
+		"evidence":                    func(r *calib.Result) { eachEvidence(r, func(ev *calib.Evidence) { ev.Fall, ev.Share = nan, inf }) },
+		"evidence of another kind":    func(r *calib.Result) { eachEvidence(r, func(ev *calib.Evidence) { ev.Cause, ev.Whose = "x", "" }) },
 		"huge":                        func(r *calib.Result) { r.Fit.SeriesResistance.Value = 1e12 },
 	} {
 		t.Run(name, func(t *testing.T) {
@@ -142,6 +145,14 @@ func TestFiguresOfSpoiltResults(t *testing.T) {
 func eachStep(r *calib.Result, do func(*calib.StepResult)) {
 	for i := range r.Steps {
 		do(&r.Steps[i])
+	}
+}
+
+func eachEvidence(r *calib.Result, do func(*calib.Evidence)) {
+	for i := range r.Findings {
+		if ev := r.Findings[i].Evidence; ev != nil {
+			do(ev)
+		}
 	}
 }
 

@@ -49,6 +49,14 @@ func TestFiguresWriteOnlyWhatTheirFontsHave(t *testing.T) {
 			t.Fatal(err)
 		}
 	}
+	for _, name := range []string{"compression", "swapped", "not-settled", "asymmetry", "offset-of-range", "outlier"} {
+		if _, err := drawFigures(figureSheets(figureFaulty(t, name)), listener, figureCoarse); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if _, err := drawFigures([]*figureSheet{rehearsalFigure(someRehearsal())}, listener, figureCoarse); err != nil {
+		t.Fatal(err)
+	}
 	// Every prefix and unit of an axis, and what a plan may write as an amplitude.
 	regular := listener.words[xfont.WeightNormal]
 	for exponent := -15.0; exponent <= 12; exponent += 3 {

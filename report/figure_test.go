@@ -12,6 +12,7 @@ import (
 	"gonum.org/v1/plot"
 
 	"rungproof/calib"
+	"rungproof/calib/diagnose"
 	"rungproof/calib/plan"
 	"rungproof/calib/reading"
 )
@@ -33,6 +34,7 @@ func figureEvaluation(t testing.TB, planText, rows string) *calib.Evaluation {
 	if err != nil {
 		t.Fatal(err)
 	}
+	e.Result.Findings = diagnose.Findings(e)
 	return e
 }
 
@@ -119,10 +121,10 @@ func TestFiguresOfArrivalAreAsLookedAt(t *testing.T) {
 // The same evaluation has the same figures to the byte.
 func TestFiguresOfEachCase(t *testing.T) {
 	for name, want := range map[string][]string{
-		"arrival":       {"readings.png", "errors.png", "unexplained.png", "joint.png"},
-		"one-amplitude": {"readings.png", "errors.png", "unexplained.png", "joint.png"},
-		"quadrature":    {"readings.png", "errors.png", "unexplained.png", "joint.png", "frequency.png"},
-		"string":        {"readings.png", "errors.png", "unexplained.png", "joint.png"},
+		"arrival":       {"readings.png", "errors.png", "unexplained.png", "joint.png", "evidence.png", "residuals.png"},
+		"one-amplitude": {"readings.png", "errors.png", "unexplained.png", "joint.png", "residuals.png"}, // what it shows cannot be told apart
+		"quadrature":    {"readings.png", "errors.png", "unexplained.png", "joint.png", "evidence.png", "residuals.png", "frequency.png"},
+		"string":        {"readings.png", "errors.png", "unexplained.png", "joint.png", "evidence.png", "residuals.png"},
 	} {
 		figures, again := figuresOf(t, figureCase(t, name)), figuresOf(t, figureCase(t, name))
 		if len(figures) != len(want) || len(again) != len(want) {
@@ -136,7 +138,7 @@ func TestFiguresOfEachCase(t *testing.T) {
 			if f.Caption != again[i].Caption || !bytes.Equal(f.PNG, again[i].PNG) {
 				t.Errorf("%s: %s differs from one time to the next", name, f.Name)
 			}
-			if b := figurePixels(t, f.PNG).Bounds(); b.Dx() != 1400 || b.Dy() < 700 {
+			if b := figurePixels(t, f.PNG).Bounds(); b.Dx() != 1400 || b.Dy() < 400 {
 				t.Errorf("%s: %s is %v", name, f.Name, b)
 			}
 		}

@@ -36,6 +36,7 @@ func (s *stream) header() error {
 			comment = text
 		}
 		s.pass()
+		s.scanner.separator = 0 // that of a comment in quotes says nothing
 	}
 	s.names = make([]string, len(s.scanner.cells))
 	for i := range s.names {

@@ -10,7 +10,7 @@ import (
 )
 
 const (
-	chunk   = 256 << 10 // bytes that are read at once
+	chunk   = 64 << 10 // bytes that are read at once
 	longest = 1 << 20   // bytes that one row may have
 )
 
@@ -46,7 +46,7 @@ func (s *scanner) cell(i int) []byte { return s.text[s.cells[i].from:s.cells[i].
 // begin reads the first lines and gives back the byte-order mark, where there is one.
 func (s *scanner) begin() (mark []byte, err error) {
 	s.buffer, s.line, s.newline = make([]byte, chunk), 1, '\n'
-	for !s.eof && s.end < chunk/4 && bytes.IndexByte(s.buffer[:s.end], '\n') < 0 {
+	for !s.eof && s.end < chunk && bytes.IndexByte(s.buffer[:s.end], '\n') < 0 {
 		if err := s.fill(); err != nil {
 			return nil, err
 		}
@@ -218,7 +218,7 @@ func closing(data []byte, open int) int {
 // the semicolon, else the comma. What stands in quotation marks does not count.
 func separator(header []byte) byte {
 	found, quoted := byte(','), false
-	for _, c := range bytes.TrimSpace(header) {
+	for _, c := range header {
 		switch {
 		case c == '"':
 			quoted = !quoted

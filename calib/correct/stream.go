@@ -206,7 +206,7 @@ func (s *stream) row() error {
 	s.summary.Rows++
 	if len(sc.cells) != len(s.names) {
 		err := s.warn(Ragged, -1, func() string {
-			return fmt.Sprintf("the row has %d cells and the header %d; it is left as it is", len(sc.cells), len(s.names))
+			return fmt.Sprintf("cells: %d in the row, %d in the header; the row is left as it is", len(sc.cells), len(s.names))
 		})
 		s.pass()
 		return err

@@ -33,6 +33,7 @@ type ranked struct {
 type rival struct {
 	kind, label string
 	weight      float64
+	size        float64 // in its variant's unit
 }
 
 // search looks for causes: the clean hypothesis first, then with the best cause
@@ -78,6 +79,14 @@ type scored struct {
 	score  float64
 	tried  int
 	fitted *calib.Hypothesis // where it was fitted in full
+}
+
+// rivalSize is the size that the cause would have in the place of the best.
+func (s *scored) rivalSize() float64 {
+	if s.fitted != nil {
+		return s.fitted.Size[len(s.fitted.Size)-1]
+	}
+	return s.size
 }
 
 // finalists is how many causes are fitted in full before one is chosen: beside
@@ -164,7 +173,7 @@ func rivals(best *ranked, all []scored) []rival {
 	var out []rival
 	for _, s := range all[1:] {
 		if w := math.Exp((s.score - all[0].score) / 2); w > 0.05 && s.kind != best.kind {
-			out = append(out, rival{s.kind, s.variant.label, w})
+			out = append(out, rival{s.kind, s.variant.label, w, s.rivalSize()})
 		}
 	}
 	return out

@@ -76,19 +76,14 @@ func (l *lines) assumed(slope int) bool {
 
 func (l *lines) x(t time.Time) float64 { return years(t.Sub(l.last)) }
 
-// row is the derivative by the parameters of the error in segment s at x.
-func (l *lines) row(s int, x float64) []float64 {
+// measured is the derivative by the parameters of a result in segment s at x, measured as
+// p was.
+func (l *lines) measured(p Point, s int, x float64) []float64 {
 	g := make([]float64, l.params)
 	g[s] = 1
 	if k := l.slope[s]; k >= 0 {
 		g[k] = x
 	}
-	return g
-}
-
-// measured is the derivative by the parameters of a result, measured as p was.
-func (l *lines) measured(p Point, s int, x float64) []float64 {
-	g := l.row(s, x)
 	if k, shared := l.common[p.Standards]; shared {
 		g[k] = p.common()
 	}

@@ -4,8 +4,6 @@ import (
 	"fmt"
 	"math"
 	"time"
-
-	"gonum.org/v1/gonum/floats"
 )
 
 // Prediction is what the trend expects on a date.
@@ -54,8 +52,12 @@ const inControl = 0.998650101968
 
 // line is the error by the line of a segment and its standard uncertainty.
 func (t *Trend) line(segment int, x float64) (y, u float64) {
-	g := t.lines.row(segment, x)
-	return floats.Dot(g, t.fit.P), math.Sqrt(t.fit.Variance(g))
+	y, variance := t.fit.P[segment], t.fit.Cov.At(segment, segment)
+	if k := t.lines.slope[segment]; k >= 0 {
+		y += x * t.fit.P[k]
+		variance += x * (2*t.fit.Cov.At(segment, k) + x*t.fit.Cov.At(k, k))
+	}
+	return y, math.Sqrt(variance)
 }
 
 // beyond is the probability that the error is outside ±limit, x years after the last

@@ -84,7 +84,7 @@ func TestSafeDateIsEarlyEnough(t *testing.T) {
 					early++
 				}
 			}
-			t.Logf("early enough in %.2f %%", 100*float64(early)/trials)
+			t.Logf("%s: early enough in %.2f %%", d.name, 100*float64(early)/trials)
 			// With a spread of its own the detector is given more room than its line needs.
 			if early < fewest || early > most && d.wander == 0 {
 				t.Errorf("early enough in %d of %d; want %d to %d", early, trials, fewest, most)
@@ -105,7 +105,7 @@ func TestDriftIntervalCovers(t *testing.T) {
 					holds++
 				}
 			}
-			t.Logf("holds the drift in %.2f %%", 100*float64(holds)/trials)
+			t.Logf("%s: holds the drift in %.2f %%", d.name, 100*float64(holds)/trials)
 			if holds < fewest || holds > most {
 				t.Errorf("the interval holds the drift in %d of %d; want %d to %d", holds, trials, fewest, most)
 			}

@@ -10,6 +10,7 @@ import (
 	"github.com/spf13/cobra"
 
 	"rungproof/calib"
+	"rungproof/calib/diagnose"
 	"rungproof/calib/fault"
 	"rungproof/calib/reading"
 	"rungproof/report"
@@ -36,6 +37,9 @@ frequency, 30 s for the tap.`,
   rungproof advise plan.toml bench.csv`,
 		Args: planAndPerhapsReadings,
 		RunE: func(c *cobra.Command, args []string) error {
+			if what == forCause {
+				return s.decide(args, asJSON)
+			}
 			if c.Flags().Changed("for") && !slices.Contains(calib.AdviceFor, what) {
 				return notAdvised(what)
 			}
@@ -53,7 +57,7 @@ frequency, 30 s for the tap.`,
 			return err
 		},
 	}
-	c.Flags().StringVar(&what, "for", "", "improve one `RESULT`: "+strings.Join(calib.AdviceFor, ", "))
+	c.Flags().StringVar(&what, "for", "", "improve one `RESULT`: "+strings.Join(calib.AdviceFor, ", ")+",\nor cause: tell the causes in READINGS apart")
 	c.Flags().Float64Var(&minutes, "minutes", 10, "the `TIME` that the steps may take")
 	c.Flags().BoolVar(&asJSON, "json", false, "write JSON instead of tables")
 	return c
@@ -70,11 +74,35 @@ func planAndPerhapsReadings(c *cobra.Command, args []string) error {
 }
 
 func notAdvised(what string) error {
-	known := strings.Join(calib.AdviceFor, ", ")
-	if near := fault.Nearest(what, calib.AdviceFor); near != "" {
+	all := append(slices.Clone(calib.AdviceFor), forCause)
+	known := strings.Join(all, ", ")
+	if near := fault.Nearest(what, all); near != "" {
 		return hinted{fmt.Sprintf("--for: %q is none of %s", what, known), fmt.Sprintf("did you mean %q?", near)}
 	}
 	return hinted{fmt.Sprintf("--for: %q is none of %s", what, known), "leave it out for all of them together"}
+}
+
+// forCause asks for the readings that tell causes apart.
+const forCause = "cause"
+
+// decide says what tells the cause that is ranked first from its rival.
+func (s *streams) decide(files []string, asJSON bool) error {
+	if len(files) < 2 {
+		return hinted{"--for cause needs READINGS: causes are found in them", "rungproof advise plan.toml bench.csv --for cause"}
+	}
+	e, err := s.evaluate(files[0], files[1])
+	if err != nil {
+		return err
+	}
+	d, err := diagnose.Decide(e)
+	if err != nil {
+		return err
+	}
+	if asJSON {
+		return s.write(report.DecidingJSON(d))
+	}
+	_, err = io.WriteString(s.out, report.Deciding(e.Plan, d))
+	return err
 }
 
 // advise reads the plan, and the readings where there are any.
