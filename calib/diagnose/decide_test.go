@@ -25,7 +25,7 @@ func TestDecideFindsTheSecondFrequency(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		set := calib.NewSimulator(p).Readings(calib.Truth{Gain: 1.01}, rand.New(rand.NewPCG(3, 0)))
+		set := calib.NewSimulator(p).Readings(calib.Truth{Gain: 1.003}, rand.New(rand.NewPCG(3, 0)))
 		e, err := calib.Evaluate(p, set)
 		if err != nil {
 			t.Fatal(err)
