@@ -10,6 +10,7 @@ import (
 	"crypto/sha256"
 	"encoding/hex"
 	"math"
+	"time"
 
 	"gonum.org/v1/gonum/stat/distuv"
 
@@ -55,6 +56,13 @@ func Evaluate(p *plan.Plan, set *reading.Set) (*Evaluation, error) {
 	r.Odd = m.oddReadings(oddFactor)
 	r.Repeatability = m.repeats
 	r.Inputs = e.inputs()
+	r.Serial, r.State, r.Temperature = p.Detector.Serial, p.Condition, p.Temperature.X
+	if !p.Date.IsZero() {
+		r.Date = p.Date.Format(time.DateOnly)
+	}
+	for _, s := range e.StandardsUsed() {
+		r.Standards = append(r.Standards, s.Name)
+	}
 	r.PlanSHA256, r.ReadingsSHA256 = digest(p.Source), digest(set.Source)
 	return e, nil
 }

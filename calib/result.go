@@ -70,6 +70,11 @@ type Result struct {
 	Budgets        []*Budget     `json:"budgets,omitempty"`     // of gain, offset and series resistance, where a report is made
 	MonteCarlo     *MonteCarlo   `json:"monte_carlo,omitempty"` // where it was asked for
 	Inputs         []InputResult `json:"inputs"`
+	Serial         string        `json:"detector_serial,omitempty"`
+	Date           string        `json:"date,omitempty"`      // of the measurements, 2026-03-12
+	State          string        `json:"condition,omitempty"` // "as found" or "as left"
+	Temperature    float64       `json:"temperature"`         // of the room, °C
+	Standards      []string      `json:"standards,omitempty"` // names of those used
 	Software       string        `json:"software,omitempty"`
 	PlanSHA256     string        `json:"plan_sha256,omitempty"`
 	ReadingsSHA256 string        `json:"readings_sha256,omitempty"`

@@ -38,11 +38,14 @@ func (s *stream) header() error {
 		s.pass()
 		s.scanner.separator = 0 // that of a comment in quotes says nothing
 	}
+	if bytes.IndexByte(s.scanner.text, 0) >= 0 {
+		return s.at(-1, "the header holds NUL bytes, as binary files and UTF-16 do; readings are text in UTF-8", asText)
+	}
 	s.names = make([]string, len(s.scanner.cells))
 	for i := range s.names {
 		s.names[i] = unquoted(s.scanner.cell(i))
 		if !utf8.ValidString(s.names[i]) {
-			return s.at(i, "the header is not text in UTF-8; a µ may be in an older code page", `save it as "CSV UTF-8" or as plain text in UTF-8`)
+			return s.at(i, "the header is not text in UTF-8; a µ may be in an older code page", asText)
 		}
 	}
 	s.separator, s.mark = s.scanner.separator, '.'

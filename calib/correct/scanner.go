@@ -11,8 +11,10 @@ import (
 
 const (
 	chunk   = 64 << 10 // bytes that are read at once
-	longest = 1 << 20   // bytes that one row may have
+	longest = 1 << 20  // bytes that one row may have
 )
+
+const asText = `save it as "CSV UTF-8" or as plain text in UTF-8`
 
 // scanner parts a file into its rows and those into cells, and alters nothing. A row
 // may go over several lines, within quotation marks. What encoding/csv would
@@ -61,11 +63,9 @@ func (s *scanner) begin() (mark []byte, err error) {
 		what = "the file is a workbook or an archive; readings are a text file, CSV"
 	case bytes.HasPrefix(head, []byte{0xff, 0xfe}), bytes.HasPrefix(head, []byte{0xfe, 0xff}):
 		what = "the file is text in UTF-16; readings are in UTF-8"
-	case bytes.IndexByte(head, 0) >= 0:
-		what = "the file holds NUL bytes, as binary files and UTF-16 do; readings are text in UTF-8"
 	}
 	if what != "" {
-		return nil, fault.List{{File: s.file, What: what, Hints: []string{`save it as "CSV UTF-8" or as plain text in UTF-8`}}}
+		return nil, fault.List{{File: s.file, What: what, Hints: []string{asText}}}
 	}
 	if bytes.HasPrefix(head, []byte("\ufeff")) {
 		s.start = 3
@@ -90,8 +90,13 @@ func (s *scanner) next() (bool, error) {
 			s.n = 0
 			return false, nil
 		}
-		if err := s.fill(); err != nil {
-			return false, err
+		// A row that goes on is not gone through again before its line can have ended.
+		for ended := false; !ended; {
+			from := s.end - s.start
+			if err := s.fill(); err != nil {
+				return false, err
+			}
+			ended = s.eof || bytes.IndexByte(s.buffer[from:s.end], s.newline) >= 0
 		}
 	}
 }

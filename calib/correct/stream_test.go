@@ -134,7 +134,7 @@ func TestFaults(t *testing.T) {
 		{"code page", "x [\xb5V]\n", simple(), Options{}, "not text in UTF-8"},
 		{"UTF-16", "\xff\xfex\x00", simple(), Options{}, "UTF-16"},
 		{"workbook", "PK\x03\x04", simple(), Options{}, "workbook"},
-		{"binary", "x\n\x00", simple(), Options{}, "NUL"},
+		{"binary", "x\x00\n", simple(), Options{}, "NUL"},
 		{"empty", "\n# a\n", simple(), Options{}, "f.csv: the file has no header"},
 		{"names all taken", "x,U,corrected x\n", simple(), Options{}, "has a column corrected x already"},
 		{"quotes", "x\n1\n\"2\n3\n", simple(), Options{}, "f.csv:3: a cell in quotation marks begins in this row and does not end"},

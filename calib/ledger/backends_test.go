@@ -99,7 +99,7 @@ func invented(i int) Record {
 	temperature := 22.5 + float64(i%7)/10
 	u := 1e-4 * (1 + float64(i%5))
 	return Record{
-		Who: "Bench 2", Software: "rungproof 0.1.0", Serial: fmt.Sprintf("D-%04d", i%1000), Date: fmt.Sprintf("20%02d-%02d-15", 20+i/12%40, 1+i%12),
+		Who: "Bench 2", Software: "rungproof 0.1.0", Serial: fmt.Sprintf("D-%04d", i%10000), Date: fmt.Sprintf("20%02d-%02d-15", 20+i/12%40, 1+i%12),
 		Condition: AsFound, Temperature: &temperature, Verdict: "pass", Note: fmt.Sprintf("visit %d, lead of 0.3 Ω", i),
 		Gain:   &Parameter{1.0027613126403792 + float64(i)*1e-9, u, 1.9599639845400536},
 		Offset: &Parameter{1.197861793096473e-07, 7.7e-10, 2.1}, SeriesResistance: &Parameter{0.31, 0.02, 2},

@@ -4,7 +4,7 @@ import (
 	"testing"
 )
 
-// The 1000 points of NIST SP 1065, clause 12.4, tables 30 and 31; recomputed to ten digits
+// The 1000 points of NIST SP 1065, tables 30 and 31; recomputed to ten digits
 // with numpy 1.24.
 func TestAllanNIST(t *testing.T) {
 	y := make([]float64, 1000)
@@ -15,16 +15,16 @@ func TestAllanNIST(t *testing.T) {
 	}
 	relative(t, "last point", y[999], 0.7264947764233196)
 	for _, c := range []struct {
-		m                           int
-		plain, overlapping, modifed float64 // printed
-		pairs                       int
-		full                        [3]float64
+		m                            int
+		plain, overlapping, modified float64 // printed
+		pairs                        int
+		full                         [3]float64
 	}{
 		{1, 2.922319e-01, 2.922319e-01, 2.922319e-01, 999, [3]float64{2.922318781e-01, 2.922318781e-01, 2.922318781e-01}},
 		{10, 9.965736e-02, 9.159953e-02, 6.172376e-02, 99, [3]float64{9.965736063e-02, 9.159953420e-02, 6.172376382e-02}},
 		{100, 3.897804e-02, 3.241343e-02, 2.170921e-02, 9, [3]float64{3.897804331e-02, 3.241343026e-02, 2.170920914e-02}},
 	} {
-		for e, printed := range []float64{c.plain, c.overlapping, c.modifed} {
+		for e, printed := range []float64{c.plain, c.overlapping, c.modified} {
 			s := must(Allan(y, 1, c.m, Estimator(e)))(t)
 			near(t, "printed deviation", s.Deviation, printed, 0.5e-6*decade(printed))
 			near(t, "deviation", s.Deviation, c.full[e], 0.5e-9*decade(printed))
@@ -44,7 +44,7 @@ func decade(x float64) float64 {
 	return d
 }
 
-// The nine points of NBS Monograph 140 as NIST SP 1065, clause 12.4, has them.
+// The nine points of NBS that NIST SP 1065 gives with their deviations.
 func TestAllanNBS(t *testing.T) {
 	y := []float64{892, 809, 823, 798, 671, 644, 883, 903, 677}
 	for _, c := range []struct {

@@ -30,8 +30,8 @@ func (t *Trend) assumption(o Options) string {
 	case t.Unstated:
 		say("No uncertainties are stated: the scatter of %s about the line stands for all of it, and an error common to them is not counted.", n)
 	case t.Scale > 1:
-		say("The results scatter %.2g times as much as their stated uncertainties explain (p = %.1g): the scatter found counts, and its excess as the detector's own.",
-			t.Scale, t.P)
+		say("The results scatter %.2g times as much as their stated uncertainties explain (%s): the scatter found counts, and its excess as the detector's own.",
+			t.Scale, chance(t.P))
 	}
 	if t.sharing() {
 		say("Results that name the same standards have the common part of their uncertainty as one error.")
@@ -49,6 +49,14 @@ func (t *Trend) sharing() bool {
 		seen[p.Standards] = seen[p.Standards] || p.common() > 0
 	}
 	return false
+}
+
+// chance writes a probability of chance.
+func chance(p float64) string {
+	if p < 0.001 {
+		return "p < 0.001"
+	}
+	return fmt.Sprintf("p = %.2g", p)
 }
 
 // count writes a number of things.

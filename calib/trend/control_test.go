@@ -8,7 +8,7 @@ import (
 )
 
 // Squares of recursive residuals sum to the χ² of all (Brown, Durbin and Evans, J. R. Statist.
-// Soc. B 37 (1975) 149, lemma 3), and there is one for each degree of freedom.
+// Soc. B 37 (1975) 149), and there is one for each degree of freedom.
 func TestScoresSumToChiSquared(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
 		h := drawHistory(t)

@@ -57,8 +57,12 @@ type Trend struct {
 	DOF        int
 	P          float64
 
-	Unstated   bool    // no uncertainties were stated: they are from the scatter
-	Scale      float64 // by which the independent parts were enlarged, where P < 5 %; else 1
+	Unstated bool // no uncertainties were stated: they are from the scatter
+
+	// Scale is by what the independent parts were enlarged where P < 5 %; else 1. What a
+	// few results scatter too much, without χ² showing it, is not made good: all
+	// uncertainties are then too small.
+	Scale      float64
 	Spread     float64 // standard deviation of the detector about its line, beyond what stated uncertainties explain
 	Assumption string  // what had to be taken for granted, in sentences
 

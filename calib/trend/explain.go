@@ -28,7 +28,7 @@ func (a *Advice) explainDrift(target float64) string {
 	case r == nil:
 		return "No drift is known that would shorten it."
 	case r.Safe.Equal(last):
-		return fmt.Sprintf("The last results leave the error beyond its limit with a probability of %.2g %% already.",
+		return fmt.Sprintf("The last results leave the error beyond its limit with a probability of %.3g %% already.",
 			100*a.Trend.beyond(0, r.Limit))
 	case r.Safe.IsZero():
 		return fmt.Sprintf("By the drift the error stays within its limit with %s for more than %.0f years.", percent(target), years(Horizon))
@@ -45,10 +45,10 @@ func (a *Advice) explainRecord(target float64) string {
 	case r.Beyond == 0:
 		return found + "."
 	case r.Interval == 0:
-		return fmt.Sprintf("%s, no more than chance makes of a reliability of %s (p = %.2g).", found, percent(target), r.P)
+		return fmt.Sprintf("%s, no more than chance makes of a reliability of %s (%s).", found, percent(target), chance(r.P))
 	default:
-		return fmt.Sprintf("%s, more than chance makes of a reliability of %s (p = %.2g): by the exponential model that is met for %d d.",
-			found, percent(target), r.P, r.Interval/day)
+		return fmt.Sprintf("%s, more than chance makes of a reliability of %s (%s): by the exponential model that is met for %d d.",
+			found, percent(target), chance(r.P), r.Interval/day)
 	}
 }
 

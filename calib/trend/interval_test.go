@@ -55,8 +55,9 @@ func TestRecordLeavesOutWhatBeganBeyond(t *testing.T) {
 func TestWhatDecides(t *testing.T) {
 	steady := yearly(1, 0, 1, 0, 1, 0, 1)
 	drifting := yearly(1, 0, 20, 40, 60, 80)
-	// Found beyond at random, but precise and without drift since: a record that
-	// Student's t of the scatter does not outdo needs a high target.
+	// Beyond after one year, and again; steady since, by a line of its own. Binomial tables:
+	// two or more of five at 5 % each 0.0226. λ = 2/(3 + 2/2) a year, 0.10259 years, 37 d.
+	improved := found(0, 120, 130, 0, 1, 0)
 	for _, c := range []struct {
 		name    string
 		h       History
@@ -70,8 +71,9 @@ func TestWhatDecides(t *testing.T) {
 		{"one result", yearly(1, 5), Options{}, 0.95, ByMaximum, "No drift is known that would shorten it. The record has no interval"},
 		{"one result and a drift assumed", yearly(1, 5), Options{Assumed: &Assumed{PerYear: 90, U: 10}}, 0.95, ByDrift, "The drift is assumed, not found"},
 		{"beyond", yearly(1, 90, 105), Options{}, 0.95, ByDrift, "0 d, by the drift"},
-		{"one result, beyond", yearly(1, 105), Options{}, 0.95, ByDrift, "beyond its limit with a probability of 1e+02 % already"},
-		{"record", recordOnly(), Options{Assumed: &Assumed{PerYear: 0, U: 1}}, 0.95, ByRecord, "2 of 2 intervals ended beyond the limit, more than chance makes of a reliability of 95 % (p = 0.0025)"},
+		{"one result, beyond", yearly(1, 105), Options{}, 0.95, ByDrift, "beyond its limit with a probability of 100 % already"},
+		{"record", improved, Options{SlopeEach: true}, 0.95, ByRecord, "37 d, by the record (interval test and exponential model, NCSLI RP-1). 2 of 5 intervals ended beyond the limit, more than chance makes of a reliability of 95 % (p = 0.023)"},
+		{"chance", found(0, 1, 2, 120, 0, 1, 2, 1, 0), Options{SlopeEach: true}, 0.95, ByMaximum, "1 of 8 intervals ended beyond the limit, no more than chance makes of a reliability of 95 % (p = 0.34)."},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			a := must(Interval(c.h, c.o, 100, c.target, 730*day))(t)
@@ -84,10 +86,6 @@ func TestWhatDecides(t *testing.T) {
 		})
 	}
 }
-
-// recordOnly is two intervals that ended beyond the limit by a step, each time with a new
-// indication that makes the old line worthless: the line since then is known apart.
-func recordOnly() History { return nil }
 
 func TestUnusableInterval(t *testing.T) {
 	h := yearly(1, 0, 1)
@@ -133,4 +131,6 @@ func ExampleInterval() {
 	}
 	fmt.Printf("%.0f a year, u %.0f\n%s\n", a.Trend.Drift.PerYear, a.Trend.Drift.U, a.Text)
 	// Output:
+	// 104 a year, u 13
+	// 1583 d, by the drift (control chart method, ILAC-G24/OIML D 10). By the drift the error is within its limit with 95 % up to 2028-07-12. 0 of 4 intervals ended beyond the limit. The drift is taken as steady between adjustments.
 }

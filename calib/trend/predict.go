@@ -112,7 +112,7 @@ func (t *Trend) Reaches(limit, probability float64) *Reach {
 // leaves finds the first x ≥ 0 where the probability to be beyond the limit is risk. It
 // need not rise from the start: an error may drift away from the limit.
 func (t *Trend) leaves(limit, risk float64) (x float64, found bool) {
-	const step = 1. / 24
+	const step = 1. / 12
 	if t.beyond(0, limit) >= risk {
 		return 0, true
 	}

@@ -12,13 +12,22 @@ func TestReach(t *testing.T) {
 	r := tr.Reaches(100, 0.95)
 	near(t, "expected, years after the last", inYears(r.Expected)-1, 21.5, 1e-6)
 	x := inYears(r.Safe) - 1
-	near(t, "predicted error and one-sided U", 14+4*x+1.644854*3*math.Sqrt((1+x)*(1+x)+x*x), 100, 1e-3) // z of 95 %: normal tables
+	y, u := 14+4*x, 3*math.Sqrt((1+x)*(1+x)+x*x)
+	near(t, "probability beyond either limit", 0.5*math.Erfc((100-y)/u/math.Sqrt2)+0.5*math.Erfc((100+y)/u/math.Sqrt2), 0.05, 1e-7)
 	if !r.Up {
 		t.Error("the lower limit")
 	}
 	p, _ := tr.At(r.Safe)
-	near(t, "the same by the prediction", p.Error+1.644854*p.U, 100, 1e-3)
+	relative(t, "predicted error", p.Error, y)
+	relative(t, "its u", p.U, u)
 	near(t, "half its 95 % interval", (p.High-p.Low)/2, 1.959964*p.U, 1e-5)
+}
+
+// With the other limit out of reach it is where predicted error and one-sided U meet it.
+func TestReachOfOneLimit(t *testing.T) {
+	tr := must(Of(yearly(1, 10, 40), Options{}))(t)
+	p, _ := tr.At(tr.Reaches(1000, 0.95).Safe)
+	near(t, "predicted error and one-sided U", p.Error+1.644854*p.U, 1000, 1e-4) // z of 95 %: normal tables
 }
 
 // An error near its upper limit that drifts away from it: the lower limit counts.

@@ -67,13 +67,14 @@ const trials = 2000
 const fewest, most = 1871, 1929
 
 // The detector's true error, its line without the wander, meets the limit not before
-// Safe. One-sided; so it is exact where the model is, and the stated uncertainties.
+// Safe: one-sided, so exact where the model and the stated uncertainties are. And the drift's
+// interval holds the drift.
 func TestSafeDateIsEarlyEnough(t *testing.T) {
 	for i, d := range detectors {
 		t.Run(d.name, func(t *testing.T) {
 			t.Parallel()
 			rng := rand.New(rand.NewPCG(1, uint64(i)))
-			early := 0
+			early, holds := 0, 0
 			for range trials {
 				h, crossing := d.history(rng)
 				tr := must(Of(h, Options{}))(t)
@@ -83,29 +84,15 @@ func TestSafeDateIsEarlyEnough(t *testing.T) {
 				if r := tr.Reaches(limit, 0.95); !r.Safe.IsZero() && !r.Safe.After(crossing) {
 					early++
 				}
+				if tr.Drift.Low <= d.drift && d.drift <= tr.Drift.High {
+					holds++
+				}
 			}
-			t.Logf("%s: early enough in %.2f %%", d.name, 100*float64(early)/trials)
+			t.Logf("%s: early enough in %.2f %%, drift held in %.2f %%", d.name, 100*float64(early)/trials, 100*float64(holds)/trials)
 			// With a spread of its own the detector is given more room than its line needs.
 			if early < fewest || early > most && d.wander == 0 {
 				t.Errorf("early enough in %d of %d; want %d to %d", early, trials, fewest, most)
 			}
-		})
-	}
-}
-
-func TestDriftIntervalCovers(t *testing.T) {
-	for i, d := range detectors {
-		t.Run(d.name, func(t *testing.T) {
-			t.Parallel()
-			rng := rand.New(rand.NewPCG(2, uint64(i)))
-			holds := 0
-			for range trials {
-				h, _ := d.history(rng)
-				if b := must(Of(h, Options{}))(t).Drift; b.Low <= d.drift && d.drift <= b.High {
-					holds++
-				}
-			}
-			t.Logf("%s: holds the drift in %.2f %%", d.name, 100*float64(holds)/trials)
 			if holds < fewest || holds > most {
 				t.Errorf("the interval holds the drift in %d of %d; want %d to %d", holds, trials, fewest, most)
 			}
@@ -128,9 +115,9 @@ func TestNoDriftIsSeldomFound(t *testing.T) {
 	}
 }
 
-// The advised interval as it is used: a workshop's detectors, each with its own drift,
-// calibrated when advised until five years have passed twice over. Early enough is: at the
-// advised date the true error is within the limit.
+// The advised interval as it is used, in 95 % of 2000 detectors, each with a drift of its own,
+// some just adjusted. Early enough is: the true error meets the limit not before the
+// advised date.
 func TestAdvisedDateIsEarlyEnough(t *testing.T) {
 	rng := rand.New(rand.NewPCG(4, 0))
 	early, byDrift := 0, 0

@@ -31,6 +31,7 @@ func main() { os.Exit(run(os.Args[1:], os.Stdin, os.Stdout, os.Stderr)) }
 type streams struct {
 	in       io.Reader
 	out, err io.Writer
+	log      string // where the log is; "" for the usual place
 	status   int
 }
 
@@ -50,7 +51,8 @@ func run(args []string, stdin io.Reader, stdout, stderr io.Writer) int {
 	root.SetOut(stdout)
 	root.SetErr(stderr)
 	root.SetArgs(joined(args))
-	root.AddCommand(draftCommand(s), expectCommand(s), sheetCommand(s), judgeCommand(s), budgetCommand(s), rehearseCommand(s), adviseCommand(s))
+	root.PersistentFlags().StringVar(&s.log, "log", "", "the log of calibrations: `FILE` or postgres://…")
+	root.AddCommand(draftCommand(s), expectCommand(s), sheetCommand(s), judgeCommand(s), budgetCommand(s), rehearseCommand(s), logCommand(s), adviseCommand(s))
 	if err := root.Execute(); err != nil {
 		fmt.Fprintln(stderr, message(err))
 		return exitFault
@@ -69,6 +71,7 @@ the wiring)?
   rungproof judge plan.toml bench.csv    the verdict
   rungproof budget plan.toml bench.csv   where the uncertainty comes from
   rungproof rehearse plan.toml           the readings of a simulated bench
+  rungproof log add report/result.json   keep the history
   rungproof advise plan.toml bench.csv   what to measure next
 
 Exit status: 0 pass, 1 fail, 3 conditional or not judged, 2 a fault in the input
