@@ -19,9 +19,10 @@
 // plays no part; the bias of a magnitude in the noise is not taken off.
 //
 // In a file, voltages are in the convention that the detector displays
-// (Calibration.ToRMS) unless a unit says its own; inside they are V rms. All that
-// is wrong with a file is a fault.List; a failure to read or write is what the
-// reader or the writer said.
+// (Calibration.ToRMS) unless a unit says its own; inside they are V rms. What
+// is wrong with a file is a fault.List; what is wrong with the calibration or the
+// options is an error before anything is read; a failure to read or write is what
+// the reader or the writer said.
 package correct
 
 import (

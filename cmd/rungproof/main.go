@@ -52,7 +52,7 @@ func run(args []string, stdin io.Reader, stdout, stderr io.Writer) int {
 	root.SetErr(stderr)
 	root.SetArgs(joined(args))
 	root.PersistentFlags().StringVar(&s.log, "log", "", "the log of calibrations: `FILE` or postgres://…")
-	root.AddCommand(draftCommand(s), expectCommand(s), sheetCommand(s), judgeCommand(s), budgetCommand(s), rehearseCommand(s), logCommand(s), adviseCommand(s))
+	root.AddCommand(draftCommand(s), expectCommand(s), sheetCommand(s), judgeCommand(s), budgetCommand(s), rehearseCommand(s), logCommand(s), trendCommand(s), dueCommand(s), correctCommand(s), adviseCommand(s))
 	if err := root.Execute(); err != nil {
 		fmt.Fprintln(stderr, message(err))
 		return exitFault
