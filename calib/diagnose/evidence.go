@@ -26,17 +26,13 @@ func shown(e *calib.Evaluation) []calib.Finding {
 	}
 	var out []calib.Finding
 	named := map[string]bool{}
-	before := clean.ChiSquared
 	for i := range found {
 		r := &found[i]
-		after := before - r.fall
 		named[r.kind] = true
 		if !e.Result.Separable() && (r.kind == Offset || r.kind == Series) {
-			before = after
 			continue // the finding that the two cannot be told apart stands for it
 		}
 		out = append(out, r.finding(e, r.fall/clean.ChiSquared, left))
-		before = after
 	}
 	if !named[RangeGain] {
 		out = append(out, rangeGainBeside(e, len(out) > 0 && fitOf(left) >= misfitLevel)...)

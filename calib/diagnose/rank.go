@@ -24,7 +24,8 @@ type ranked struct {
 	cause
 	variant variant
 	size, u float64
-	fall    float64 // of χ²
+	fall    float64 // of χ², as it is
+	tested  float64 // the same over the scale of the F test
 	p       float64 // probability of as large a fall by chance, over all variants of the cause
 	rivals  []rival // other causes that explain nearly as much
 }
@@ -105,8 +106,8 @@ func refit(e *calib.Evaluation, terms []calib.Term, h *calib.Hypothesis, scores 
 		}
 		s.fitted = next
 		fall := h.ChiSquared - next.ChiSquared
-		s.fall = fall / scale(h, fall)
-		s.score = s.fall - 2*math.Log(float64(s.tried))
+		s.fall, s.tested = fall, fall/scale(h, fall)
+		s.score = s.tested - 2*math.Log(float64(s.tried))
 	}
 	sort.SliceStable(scores, func(i, j int) bool { return scores[i].score > scores[j].score })
 	return scores[0].fitted
@@ -136,18 +137,18 @@ func contest(h *calib.Hypothesis, all []cause, used map[string]bool) []scored {
 				continue
 			}
 			tried++
-			fall := s.Fall / scale(h, s.Fall)
-			if best == nil || fall > best.fall {
-				best = &scored{ranked: ranked{cause: c, variant: v, size: s.Size, u: s.U, fall: fall}}
+			tested := s.Fall / scale(h, s.Fall)
+			if best == nil || tested > best.tested {
+				best = &scored{ranked: ranked{cause: c, variant: v, size: s.Size, u: s.U, fall: s.Fall, tested: tested}}
 			}
 		}
 		if best == nil {
 			continue
 		}
-		one := distuv.ChiSquared{K: 1}.Survival(best.fall)
+		one := distuv.ChiSquared{K: 1}.Survival(best.tested)
 		best.p = -math.Expm1(float64(tried) * math.Log1p(-one))
 		best.tried = tried
-		best.score = best.fall - 2*math.Log(float64(tried))
+		best.score = best.tested - 2*math.Log(float64(tried))
 		out = append(out, *best)
 	}
 	sort.SliceStable(out, func(i, j int) bool { return out[i].score > out[j].score })
