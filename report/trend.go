@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"math"
+	"os"
 	"strings"
 	"time"
 
@@ -141,6 +142,9 @@ func WriteTrends(dir string, views []*TrendView) error {
 	files, err := trendFiles(views)
 	if err != nil {
 		return err
+	}
+	if err := os.MkdirAll(dir, 0o777); err != nil {
+		return fmt.Errorf("the figures cannot be written: %w", err)
 	}
 	return writeAll(dir, files)
 }

@@ -25,9 +25,9 @@ func forge(t testing.TB, b backend, location string, statements ...string) {
 	}
 }
 
-// fields are the columns of each table that hold content, with what a forger might put
+// forgeries are the columns of each table that hold content, with what a forger might put
 // there.
-var fields = map[string]string{
+var forgeries = map[string]string{
 	"logged": "'2026-01-01T00:00:00.000000Z'", "who": "'x'", "software": "'x'", "serial": "'x'", "measured": "'2001-01-01'",
 	"condition": "'as left'", "temperature": "25.0", "verdict": "'fail'", "note": "''",
 	"gain": "gain + 1e-12", "gain_u": "gain_u * 2", "gain_k": "2", "offset_v": "-offset_v", "offset_u": "0", "offset_k": "NULL",
@@ -41,11 +41,11 @@ func TestEveryFieldIsSealed(t *testing.T) {
 		s, location := filled(t, b, 6)
 		forge(t, b, location, "CREATE TABLE kept AS SELECT * FROM log_entry", "CREATE TABLE kept_range AS SELECT * FROM log_range")
 		for column := range strings.SplitSeq(strings.ReplaceAll(columns+", plan, readings, result", "\n\t", " "), ", ") {
-			if _, ok := fields[column]; !ok && column != "id" {
+			if _, ok := forgeries[column]; !ok && column != "id" {
 				t.Errorf("column %s is not tried", column)
 			}
 		}
-		for column, value := range fields {
+		for column, value := range forgeries {
 			forge(t, b, location, fmt.Sprintf("UPDATE log_entry SET %s = %s WHERE id = 3", column, value))
 			r, text := checked(t, s)
 			if len(r.Findings) != 1 || r.Findings[0].Kind != Altered || r.Findings[0].First != 3 || r.Findings[0].Last != 3 {
@@ -57,6 +57,8 @@ func TestEveryFieldIsSealed(t *testing.T) {
 			"UPDATE log_range SET full_scale = 1 WHERE entry = 3 AND position = 0", "UPDATE log_range SET gain = 1 WHERE entry = 3 AND position = 0",
 			"UPDATE log_range SET gain_u = 1 WHERE entry = 3 AND position = 1", "UPDATE log_range SET gain_k = 1 WHERE entry = 3 AND position = 1",
 			"UPDATE log_range SET position = 2 WHERE entry = 3 AND position = 1", "DELETE FROM log_range WHERE entry = 3 AND position = 0",
+			"UPDATE log_entry SET supersedes = 0 WHERE id = 3", "UPDATE log_entry SET logged = replace(logged, '.', ',') WHERE id = 3",
+			"UPDATE log_entry SET standards = replace(standards, '\",\"', '\", \"') WHERE id = 3",
 			"DELETE FROM log_range WHERE entry = 3", "INSERT INTO log_range SELECT 3, 2, full_scale, gain, gain_u, gain_k FROM kept_range WHERE entry = 1 AND position = 0",
 			"UPDATE log_seal SET hash = (SELECT hash FROM log_seal WHERE id = 1) WHERE id = 3",
 		} {
@@ -65,7 +67,8 @@ func TestEveryFieldIsSealed(t *testing.T) {
 				t.Errorf("%s: %q", change, text)
 			}
 			forge(t, b, location, "DELETE FROM log_range WHERE entry = 3", "INSERT INTO log_range SELECT * FROM kept_range WHERE entry = 3",
-				"UPDATE log_seal SET hash = (SELECT hash FROM kept WHERE id = 3) WHERE id = 3")
+				"UPDATE log_seal SET hash = (SELECT hash FROM kept WHERE id = 3) WHERE id = 3",
+				"UPDATE log_entry SET supersedes = k.supersedes, logged = k.logged, standards = k.standards FROM kept k WHERE log_entry.id = 3 AND k.id = 3")
 		}
 		if r, text := checked(t, s); !r.Sound() {
 			t.Errorf("all put back, and yet: %s", text)

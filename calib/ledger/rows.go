@@ -83,10 +83,10 @@ func load(ctx context.Context, q querier, c choice) (out []row, stray []int64, e
 	}
 	defer r.Close()
 	at := map[int64]int{}
-	var names standards
+	var f fields
 	for r.Next() {
 		out = append(out, row{})
-		if err := out[len(out)-1].scan(r, c, &names); err != nil {
+		if err := out[len(out)-1].scan(r, c, &f); err != nil {
 			return nil, nil, err
 		}
 		at[out[len(out)-1].ID] = len(out) - 1
@@ -126,59 +126,78 @@ func (s *standards) read(text string) {
 	}
 }
 
+// fields are a row's columns on their way into an entry. They are used again for each
+// row. A number that may be absent is nil, float64 or int64.
+type fields struct {
+	logged, standards string
+	temperature       any
+	parameters        [9]any
+	supersedes, by    any
+	digests           [5][]byte
+	packed            [3][]byte
+	into              []any
+	names             standards
+}
+
 // scan reads one row. What can only stand there by another hand is its damage.
-func (w *row) scan(r rows, c choice, names *standards) error {
-	var logged, standards string
-	var supersedes, by *int64
-	var p [3][3]*float64
-	var digests [5][]byte
-	var packed [3][]byte
-	into := []any{&w.ID, &logged, &w.Who, &w.Software, &w.Serial, &w.Date, &w.Condition, &w.Temperature, &w.Verdict, &w.Note,
-		&p[0][0], &p[0][1], &p[0][2], &p[1][0], &p[1][1], &p[1][2], &p[2][0], &p[2][1], &p[2][2],
-		&standards, &supersedes, &w.Reason, &digests[0], &digests[1], &digests[2], &digests[3], &digests[4]}
+func (w *row) scan(r rows, c choice, f *fields) error {
+	f.into = append(f.into[:0], &w.ID, &f.logged, &w.Who, &w.Software, &w.Serial, &w.Date, &w.Condition, &f.temperature, &w.Verdict, &w.Note)
+	for i := range f.parameters {
+		f.into = append(f.into, &f.parameters[i])
+	}
+	f.into = append(f.into, &f.standards, &f.supersedes, &w.Reason)
+	for i := range f.digests {
+		f.into = append(f.into, &f.digests[i])
+	}
 	if c.content {
-		into = append(into, &packed[0], &packed[1], &packed[2])
+		f.into = append(f.into, &f.packed[0], &f.packed[1], &f.packed[2])
 	}
 	if c.by {
-		into = append(into, &by)
+		f.into = append(f.into, &f.by)
 	}
-	if err := r.Scan(into...); err != nil {
+	if err := r.Scan(f.into...); err != nil {
 		return fmt.Errorf("entry %d cannot be read: %w", w.ID, err)
 	}
-	if supersedes != nil {
-		w.Supersedes = *supersedes
+	if temperature, ok := f.temperature.(float64); ok {
+		w.Temperature = &temperature
 	}
-	if by != nil {
-		w.SupersededBy = *by
-	}
+	w.Supersedes, _ = f.supersedes.(int64)
+	w.SupersededBy, _ = f.by.(int64)
 	hurt := func(format string, args ...any) {
 		if w.damage == nil {
 			w.damage = fmt.Errorf(format, args...)
 		}
 	}
-	var err error
-	if w.Logged, err = time.Parse(timeLayout, logged); err != nil || w.Logged.Format(timeLayout) != logged {
-		hurt("the time logged is %q", logged)
+	if f.supersedes == int64(0) {
+		hurt("it supersedes entry 0")
 	}
-	names.read(standards)
-	if w.Standards = names.names; !names.ok {
-		hurt("the list of standards is %q", standards)
+	var err error
+	var again [len(timeLayout)]byte
+	if w.Logged, err = time.Parse(timeLayout, f.logged); err != nil || string(w.Logged.AppendFormat(again[:0], timeLayout)) != f.logged {
+		hurt("the time logged is %q", f.logged)
+	}
+	f.names.read(f.standards)
+	if w.Standards = f.names.names; !f.names.ok {
+		hurt("the list of standards is %q", f.standards)
 	}
 	for i, into := range []**Parameter{&w.Gain, &w.Offset, &w.SeriesResistance} {
-		x := p[i]
-		if x[0] != nil && x[1] != nil && x[2] != nil {
-			*into = &Parameter{*x[0], *x[1], *x[2]}
-		} else if x[0] != nil || x[1] != nil || x[2] != nil {
+		x := f.parameters[3*i:]
+		value, ok := x[0].(float64)
+		u, okU := x[1].(float64)
+		k, okK := x[2].(float64)
+		if ok && okU && okK {
+			*into = &Parameter{value, u, k}
+		} else if ok || okU || okK {
 			hurt("%s lacks its value, u or k", []string{"gain", "offset", "series resistance"}[i])
 		}
 	}
 	for i, into := range []*Digest{&w.PlanSHA256, &w.ReadingsSHA256, &w.ResultSHA256, &w.Previous, &w.Hash} {
-		if copy(into[:], digests[i]) != len(into) || len(digests[i]) != len(into) {
-			hurt("a SHA-256 of %d bytes", len(digests[i]))
+		if copy(into[:], f.digests[i]) != len(into) || len(f.digests[i]) != len(into) {
+			hurt("a SHA-256 of %d bytes", len(f.digests[i]))
 		}
 	}
 	if c.content {
-		w.open(packed, hurt)
+		w.open(f.packed, hurt)
 	}
 	return nil
 }

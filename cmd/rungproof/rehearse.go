@@ -27,6 +27,7 @@ type rehearsal struct {
 	trials       int
 	asJSON       bool
 	faults       map[string]*string // by flag, the value as written
+	rangeGain    string
 	swap         string
 	mains        string
 	interference string
@@ -72,6 +73,7 @@ and the findings get it right.`,
 	for _, p := range plantable {
 		r.faults[p.flag] = f.String(p.flag, "", p.help)
 	}
+	f.StringVar(&r.rangeGain, "range-gain", "", "`RANGE=SHARE` of gain too much there: \"1 mV=2 %\"")
 	f.StringVar(&r.swap, "swap", "", "two `SETTINGS`: \"box at 1 kΩ and at 500 Ω\"")
 	f.StringVar(&r.mains, "mains", "", "`LINE` at the input: \"1 mV at 50 Hz\"")
 	f.StringVar(&r.interference, "interference", "", "scatter of a reading, in `V`: \"300 nV\"")
@@ -179,6 +181,14 @@ func (r *rehearsal) truth(p *plan.Plan) (calib.Truth, error) {
 		default:
 			faults = append(faults, diagnose.Fault{Kind: f.kind, Variant: f.variant, Size: v.X})
 		}
+	}
+	if r.rangeGain != "" {
+		full, share, two := strings.Cut(r.rangeGain, "=")
+		v, err := quantity.Parse(share, quantity.Ratio)
+		if err != nil || !two {
+			return truth, hinted{fmt.Sprintf("--range-gain: %q is no range and share", r.rangeGain), `--range-gain "1 mV=2 %"`}
+		}
+		faults = append(faults, diagnose.Fault{Kind: diagnose.RangeGain, Variant: "the " + strings.TrimSpace(full) + " range", Size: v.X})
 	}
 	if r.swap != "" {
 		faults = append(faults, diagnose.Fault{Kind: diagnose.Swapped, Variant: r.swap, Size: 1})
