@@ -58,7 +58,7 @@ func fleetPage(views []*TrendView) ([]byte, error) {
 	sheets := make([]*figureSheet, len(sorted))
 	for i, v := range sorted {
 		sheets[i] = trendFigure(v, from, to, 1.5)
-		sheets[i].title, sheets[i].keys, sheets[i].height = v.subject(), nil, 2.9*72
+		sheets[i].title, sheets[i].keys, sheets[i].height = v.subject(), nil, 2.7*72
 	}
 	figures, err := drawFigures(sheets, plot.DefaultTextHandler, fleetDPI)
 	if err != nil {

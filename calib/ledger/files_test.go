@@ -2,7 +2,6 @@ package ledger
 
 import (
 	"errors"
-	"fmt"
 	"os"
 	"path/filepath"
 	"runtime"
@@ -159,7 +158,7 @@ func mount(t *testing.T, dir, options string, readOnly bool) {
 		t.Skip("no small disk: mounting a tmpfs needs Linux and the administrator")
 	}
 	if err := mountTmpfs(dir, options, readOnly); err != nil {
-		t.Skip(fmt.Sprintf("no small disk: %v", err))
+		t.Skipf("no small disk: %v", err)
 	}
 	if !readOnly {
 		t.Cleanup(func() {
