@@ -141,7 +141,7 @@ func (m *model) estimateFrom(gain string, h held, from []float64) (*estimate, er
 	// Two parameters that look alike can keep the fit from settling; its
 	// covariance says so all the same, and the caller then holds one of them.
 	var err error
-	if e.result, err = fit.Solve(problem); err != nil && (e.result == nil || (e.result.Step > nearlySettled && e.separable())) {
+	if e.result, err = fit.Solve(problem); err != nil && (e.result == nil || (e.result.Step > nearlySettled && e.separable() && !e.gross())) {
 		return nil, m.unsettled(err)
 	}
 	e.v = w.at(e.result.P, m.forward.stated())
@@ -216,6 +216,13 @@ func (e *estimate) separable() bool {
 		}
 	}
 	return true
+}
+
+// gross tells whether the readings miss the model by so much that where exactly the
+// fit ends no longer matters: ten standard deviations a reading. The misfit and the
+// causes are then what there is to say.
+func (e *estimate) gross() bool {
+	return e.result.ChiSquared > 100*float64(max(1, e.result.DOF))
 }
 
 // seesSignal tells whether the detector responds to the ladder at all: some gain

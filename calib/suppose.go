@@ -72,7 +72,7 @@ func (m *model) suppose(terms []Term, from []float64) (*Hypothesis, error) {
 		m.addTerms(terms, turns, from, lay, p, r, jac)
 	}
 	result, err := fit.Solve(problem)
-	if err != nil && (result == nil || result.Step > nearlySettled) {
+	if err != nil && (result == nil || (result.Step > nearlySettled && result.ChiSquared < 100*float64(max(1, result.DOF)))) {
 		return nil, err
 	}
 	h := &Hypothesis{ChiSquared: result.ChiSquared, DOF: result.DOF, m: m, turns: turns, sigma: problem.Sigma}

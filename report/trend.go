@@ -74,7 +74,7 @@ func (v *TrendView) sentences() []string {
 		if !d.Significant() {
 			text += " That is not beyond what scatter makes."
 		} else {
-			text += fmt.Sprintf(" It is beyond scatter (p = %.2g).", d.P)
+			text += fmt.Sprintf(" It is beyond scatter (%s).", chance(d.P))
 		}
 		out = append(out, text)
 	}

@@ -3,10 +3,12 @@ package diagnose
 import (
 	"fmt"
 	"math"
+	"math/cmplx"
 	"strings"
 
 	"rungproof/calib"
 	"rungproof/calib/decision"
+	"rungproof/calib/plan"
 	"rungproof/calib/quantity"
 )
 
@@ -53,7 +55,7 @@ func parts(e *calib.Evaluation, s *calib.StepResult) string {
 		left -= part
 		out = append(out, volts(part)+" are the gain's")
 	}
-	if o := offsetAt(e, s); !math.IsNaN(o) {
+	if o := offsetAt(e, s) * direction(e, s); !math.IsNaN(o) {
 		left -= o
 		name := " are the offset's"
 		if !e.Result.Separable() {
@@ -65,6 +67,20 @@ func parts(e *calib.Evaluation, s *calib.StepResult) string {
 		return out[0]
 	}
 	return strings.Join(append(out, volts(left)+" neither's"), ", ")
+}
+
+// direction is the part of an offset that lies along a step's expected phasor: 1,
+// and for two-phase readings the cosine between the two.
+func direction(e *calib.Evaluation, s *calib.StepResult) float64 {
+	if e.Plan.Detector.Reads != plan.TwoPhase {
+		return 1
+	}
+	for _, x := range e.Sights() {
+		if x.Step == s.Index {
+			return real(x.Along) / math.Max(cmplx.Abs(x.Along), 1e-300)
+		}
+	}
+	return 1
 }
 
 // gainAt is the gain that holds at a step: its range's own where that is used.

@@ -2,6 +2,7 @@ package diagnose
 
 import (
 	"math"
+	"slices"
 	"sort"
 
 	"gonum.org/v1/gonum/stat/distuv"
@@ -70,6 +71,8 @@ func search(e *calib.Evaluation) (found []ranked, clean, left *calib.Hypothesis)
 	for i := range found {
 		found[i].size, found[i].u = left.Size[i], left.U[i]
 	}
+	// A later cause can make an earlier one void.
+	found = slices.DeleteFunc(found, func(r ranked) bool { return math.Abs(r.size) < 2*r.u })
 	return found, clean, left
 }
 
@@ -104,6 +107,10 @@ func refit(e *calib.Evaluation, terms []calib.Term, h *calib.Hypothesis, scores 
 			s.score = math.Inf(-1)
 			continue
 		}
+		if size, u := next.Size[len(next.Size)-1], next.U[len(next.U)-1]; s.variant.whole && math.Abs(size-1) > math.Max(0.15, 3*u) {
+			s.score = math.Inf(-1) // half a swap is something else
+			continue
+		}
 		s.fitted = next
 		fall := h.ChiSquared - next.ChiSquared
 		s.fall, s.tested = fall, fall/scale(h, fall)
@@ -133,7 +140,7 @@ func contest(h *calib.Hypothesis, all []cause, used map[string]bool) []scored {
 				continue
 			}
 			s, ok := v.try(h)
-			if !ok || (v.whole && math.Abs(s.Size-1) > math.Max(0.15, 3*s.U)) {
+			if !ok {
 				continue
 			}
 			tried++

@@ -42,7 +42,7 @@ var entries = flag.Int("entries", 1_000_000, "entries of the logs that benchmark
 
 // generate fills a log past Add, many entries a transaction and without packing
 // anything twice.
-func generate(b *testing.B, s Store, n int) {
+func generate(b testing.TB, s Store, n int) {
 	b.Helper()
 	plan, readings, result := invented(0).Plan, invented(0).Readings, invented(0).Result
 	packed := [3][]byte{pack(plan), pack(readings), pack(result)}

@@ -149,7 +149,9 @@ func TestAddedAndRemoved(t *testing.T) {
 
 // What was done is found in a log of several spans, at their ends too.
 func TestLongLog(t *testing.T) {
-	s, location := filled(t, sqliteBackend, 2*chunk+10)
+	location := sqliteBackend.location(t)
+	s := open(t, location)
+	generate(t, s, 2*chunk+10)
 	if r, text := checked(t, s); !r.Sound() || r.Entries != 2*chunk+10 {
 		t.Fatalf("%d entries, %s", r.Entries, text)
 	}

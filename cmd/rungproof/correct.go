@@ -49,7 +49,7 @@ error.`,
 			}
 			o.Date = on
 			var c *correct.Calibration
-			if err := s.withLog(func(ctx context.Context, store ledger.Store) error {
+			if err := s.withLog(false, func(ctx context.Context, store ledger.Store) error {
 				c, err = inForce(ctx, store, serial, on, good)
 				return err
 			}); err != nil {

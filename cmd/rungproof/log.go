@@ -58,11 +58,17 @@ func (s *streams) place() (string, error) {
 	return filepath.Join(data, "rungproof", "calibrations.db"), nil
 }
 
-// withLog opens the log, does something with it, and closes it.
-func (s *streams) withLog(do func(context.Context, ledger.Store) error) error {
+// withLog opens the log, does something with it, and closes it. Only what writes
+// begins a log where there is none.
+func (s *streams) withLog(create bool, do func(context.Context, ledger.Store) error) error {
 	place, err := s.place()
 	if err != nil {
 		return err
+	}
+	if !create && !strings.Contains(place, "://") {
+		if _, err := os.Stat(place); err != nil {
+			return hinted{place + " is no log: " + fileError("", err).Error()[2:], "log add begins one; --log or RUNGPROOF_LOG names another"}
+		}
 	}
 	ctx := context.Background()
 	store, err := ledger.Open(ctx, place)
@@ -103,7 +109,7 @@ are judged and stored whole with the result.`,
 			if err := loggable(&r); err != nil {
 				return err
 			}
-			return s.withLog(func(ctx context.Context, store ledger.Store) error {
+			return s.withLog(true, func(ctx context.Context, store ledger.Store) error {
 				entry, err := store.Add(ctx, r)
 				if err != nil {
 					return err
@@ -159,6 +165,9 @@ func (s *streams) record(args []string, planFile, readingsFile string) (ledger.R
 	if err != nil {
 		return ledger.Record{}, err
 	}
+	if result, err = ledger.Compact(result); err != nil {
+		return ledger.Record{}, err
+	}
 	r, err := ledger.FromResult(result)
 	r.Plan, r.Readings = e.Plan.Source, e.Readings.Source
 	return r, err
@@ -193,7 +202,7 @@ func logList(s *streams) *cobra.Command {
 		Example: "  rungproof log list --serial G7-0311",
 		Args:    cobra.NoArgs,
 		RunE: func(*cobra.Command, []string) error {
-			return s.withLog(func(ctx context.Context, store ledger.Store) error {
+			return s.withLog(false, func(ctx context.Context, store ledger.Store) error {
 				entries, err := store.List(ctx, filter)
 				if err != nil {
 					return err
@@ -226,7 +235,7 @@ func logShow(s *streams) *cobra.Command {
 			if err != nil || id < 1 {
 				return hinted{fmt.Sprintf("%q is no entry", args[0]), "entries are numbered from 1: rungproof log list"}
 			}
-			return s.withLog(func(ctx context.Context, store ledger.Store) error {
+			return s.withLog(false, func(ctx context.Context, store ledger.Store) error {
 				entry, err := store.Show(ctx, id)
 				if errors.Is(err, ledger.ErrNoEntry) {
 					return hinted{fmt.Sprintf("there is no entry %d in %s", id, store.Place()), "rungproof log list"}
@@ -256,7 +265,7 @@ noted elsewhere, tells later whether the end was cut off.`,
 		Example: "  rungproof log check",
 		Args:    cobra.NoArgs,
 		RunE: func(*cobra.Command, []string) error {
-			return s.withLog(func(ctx context.Context, store ledger.Store) error {
+			return s.withLog(false, func(ctx context.Context, store ledger.Store) error {
 				r, err := store.Check(ctx)
 				if err != nil {
 					return err
@@ -282,7 +291,7 @@ func logExport(s *streams) *cobra.Command {
 			if asCSV == asJSON {
 				return hinted{"log export needs --json or --csv", "--json is lossless and can be imported; --csv is for a spreadsheet"}
 			}
-			return s.withLog(func(ctx context.Context, store ledger.Store) error {
+			return s.withLog(false, func(ctx context.Context, store ledger.Store) error {
 				if asCSV {
 					return store.ExportCSV(ctx, s.out)
 				}
@@ -311,7 +320,7 @@ func logImport(s *streams) *cobra.Command {
 				defer f.Close()
 				in = f
 			}
-			return s.withLog(func(ctx context.Context, store ledger.Store) error {
+			return s.withLog(true, func(ctx context.Context, store ledger.Store) error {
 				added, err := store.Import(ctx, in)
 				if err != nil {
 					return err

@@ -2,10 +2,12 @@ package main
 
 import (
 	"bytes"
+	"math"
 
 	"github.com/spf13/cobra"
 
 	"rungproof/calib"
+	"rungproof/calib/plan"
 	"rungproof/calib/reading"
 )
 
@@ -31,6 +33,9 @@ which checks the settings against the plan.`,
 			expected := make([]float64, len(x.Steps))
 			for i, step := range x.Steps {
 				expected[i] = step.Expected
+				if p.Detector.Reads == plan.TwoPhase { // x of a reference turned to maximum at the generator's phase
+					expected[i] = step.Drop * math.Cos(step.PhaseDeg*math.Pi/180-p.Steps[i].Phase)
+				}
 			}
 			var b bytes.Buffer
 			if err := reading.Sheet(&b, p, expected); err != nil {

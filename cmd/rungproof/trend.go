@@ -43,7 +43,7 @@ breaks: as found belongs before, as left after. With --all, of every detector.`,
 			if all == (len(args) == 1) {
 				return usage(c, "trend needs a SERIAL, or --all")
 			}
-			return s.withLog(func(ctx context.Context, store ledger.Store) error {
+			return s.withLog(false, func(ctx context.Context, store ledger.Store) error {
 				serials := args
 				if all {
 					var err error
@@ -114,7 +114,7 @@ allows (interval test with the exponential model of NCSLI RP-1).`,
 					return hinted{fmt.Sprintf("--on: %q is no date", on), "write it like 2026-03-12"}
 				}
 			}
-			return s.withLog(func(ctx context.Context, store ledger.Store) error {
+			return s.withLog(false, func(ctx context.Context, store ledger.Store) error {
 				serials, err := serialsOf(ctx, store)
 				if err != nil {
 					return err

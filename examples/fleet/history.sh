@@ -1,9 +1,9 @@
 #!/bin/sh
 # Eight summers of five detectors: each line rehearses a calibration (simulated readings,
-# the same for the same seed) and logs it. The log is the one that RUNGPROOF_LOG names.
+# the same for the same seed) and logs it. The log is the one that RUNGPROOF_LOG names; begin
+# with a new one, for nothing is ever removed from a log.
 set -e
 cd "$(dirname "$0")"
-
 
 # 2018
 rungproof rehearse g1.toml --gain "0.05 %" --seed 20181 | rungproof log add --plan g1.toml --readings - --date 2018-06-04 --condition as-found
