@@ -6,6 +6,7 @@ package diagnose
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"rungproof/calib"
@@ -145,7 +146,11 @@ func rangeGain(e *calib.Evaluation) []calib.Finding {
 	if !(float64(g.PCommon) < level) || len(g.Gain) < 2 {
 		return nil
 	}
-	odd := oddOnes(e, g.Gain)
+	odd := slices.DeleteFunc(oddOnes(e, g.Gain), func(k int) bool { return math.Abs(g.Gain[k].Value-1) < g.Gain[k].Expanded() })
+	if len(odd) == 0 {
+		return one(RangeGain, "look at the other findings first: a misfit can make the ranges differ.",
+			"one gain for all ranges does not fit (%s), but no range stands out by more than its U.", probability(float64(g.PCommon)))
+	}
 	whose := make([]string, len(odd))
 	for i, k := range odd {
 		kg := g.Gain[k]
@@ -193,6 +198,9 @@ func convention(g float64) string {
 		ratio float64
 		name  string
 	}{
+		{1e6, "near 10^6: the readings are in µV, and were taken for volts"},
+		{1e3, "near 10^3: the readings' unit is a thousand times too large"},
+		{1e-3, "near 10^-3: the readings' unit is a thousand times too small"},
 		{-1, "near -1: two leads swapped, or the reference at 180°"},
 		{2 * math.Sqrt2, "near 2√2: peak-to-peak taken for rms"},
 		{1 / (2 * math.Sqrt2), "near 1/(2√2): rms taken for peak-to-peak"},

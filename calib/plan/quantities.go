@@ -34,6 +34,10 @@ func (d *decoder) written(n *node, k quantity.Kind, s sign) (v quantity.Value, o
 	}
 	v, err := quantity.Parse(n.text, k)
 	switch {
+	case k == quantity.Ratio && plainNumber.MatchString(n.text):
+		// Whether "2" is 2 % or 200 % is not guessed.
+		d.fault(n, "%q has no unit; a share is written like \"2 %%\" or \"25 ppm\"", n.text)
+		return quantity.Value{}, false
 	case err != nil:
 		d.fault(n, "%v", err)
 		return quantity.Value{}, false

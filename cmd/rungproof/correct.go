@@ -117,6 +117,19 @@ func inForce(ctx context.Context, store ledger.Store, serial string, on time.Tim
 	if err != nil {
 		return nil, err
 	}
+	c, err := calibrationOf(&e, valid)
+	if err != nil {
+		return nil, err
+	}
+	if v, err := trendView(ctx, store, serial, "gain", longestInterval); err == nil && v.Trend.Drift != nil && v.Trend.Drift.U > 0 {
+		c.Drift = &correct.Drift{PerYear: v.Trend.Drift.PerYear, U: v.Trend.Drift.U}
+	}
+	return c, nil
+}
+
+// calibrationOf is what an entry of the log corrects readings by.
+func calibrationOf(e *ledger.Entry, valid time.Duration) (*correct.Calibration, error) {
+	serial := e.Serial
 	if e.Offset == nil || (e.Gain == nil && len(e.Ranges) == 0) {
 		return nil, hinted{fmt.Sprintf("entry %d, the calibration of %s in force, does not determine gain and offset", e.ID, serial), "rungproof log show " + fmt.Sprint(e.ID)}
 	}
@@ -147,9 +160,6 @@ func inForce(ctx context.Context, store ledger.Store, serial string, on time.Tim
 		}
 		g.From, g.To = spans[r.Range].From, spans[r.Range].To
 		c.Gains = append(c.Gains, g)
-	}
-	if v, err := trendView(ctx, store, serial, "gain", longestInterval); err == nil && v.Trend.Drift != nil && v.Trend.Drift.U > 0 {
-		c.Drift = &correct.Drift{PerYear: v.Trend.Drift.PerYear, U: v.Trend.Drift.U}
 	}
 	return c, nil
 }
