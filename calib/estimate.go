@@ -112,6 +112,25 @@ func (m *model) estimate(gain string, h held) (*estimate, error) {
 	return m.estimateFrom(gain, h, nil)
 }
 
+// problem is the part of a fit that every layout has: the readings' uncertainties
+// and the stated values of the inputs.
+func (m *model) problem(w *layout, start []float64) fit.Problem {
+	p := fit.Problem{Start: start}
+	for i := range m.obs {
+		if o := &m.obs[i]; !o.left {
+			p.Sigma = append(p.Sigma, o.along)
+			if m.axes == 2 {
+				p.Sigma = append(p.Sigma, o.across)
+			}
+		}
+	}
+	p.N = len(p.Sigma)
+	for i, in := range m.forward.inputs {
+		p.Priors = append(p.Priors, fit.Prior{Param: w.inputs + i, Value: in.Value, U: in.U})
+	}
+	return p
+}
+
 // estimateFrom starts the fit from given parameters, where there are any.
 func (m *model) estimateFrom(gain string, h held, from []float64) (*estimate, error) {
 	w, keys := m.arrange(gain, h)
@@ -120,19 +139,7 @@ func (m *model) estimateFrom(gain string, h held, from []float64) (*estimate, er
 	if from != nil {
 		start = from
 	}
-	problem := fit.Problem{Start: start}
-	for i := range m.obs {
-		if o := &m.obs[i]; !o.left {
-			problem.Sigma = append(problem.Sigma, o.along)
-			if m.axes == 2 {
-				problem.Sigma = append(problem.Sigma, o.across)
-			}
-		}
-	}
-	problem.N = len(problem.Sigma)
-	for i, in := range m.forward.inputs {
-		problem.Priors = append(problem.Priors, fit.Prior{Param: w.inputs + i, Value: in.Value, U: in.U})
-	}
+	problem := m.problem(w, start)
 	if x := m.plan.Fit.SeriesExpected; x != nil && w.series >= 0 && x.U() > 0 {
 		e.prior = len(problem.Priors)
 		problem.Priors = append(problem.Priors, fit.Prior{Param: w.series, Value: x.X, U: x.U()})

@@ -54,19 +54,7 @@ func (m *model) suppose(terms []Term, from []float64) (*Hypothesis, error) {
 	lay.inputs = lay.n
 	lay.n += len(m.forward.inputs)
 	start, turns := m.startClean(lay)
-	problem := fit.Problem{Start: start}
-	for i := range m.obs {
-		if o := &m.obs[i]; !o.left {
-			problem.Sigma = append(problem.Sigma, o.along)
-			if m.axes == 2 {
-				problem.Sigma = append(problem.Sigma, o.across)
-			}
-		}
-	}
-	problem.N = len(problem.Sigma)
-	for i, in := range m.forward.inputs {
-		problem.Priors = append(problem.Priors, fit.Prior{Param: lay.inputs + i, Value: in.Value, U: in.U})
-	}
+	problem := m.problem(lay, start)
 	problem.Residuals = func(p, r []float64, jac *mat.Dense) {
 		m.residuals(lay, turns, p, r, jac)
 		m.addTerms(terms, turns, from, lay, p, r, jac)
