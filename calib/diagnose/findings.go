@@ -32,6 +32,7 @@ const (
 	Flagged        = "flagged reading"
 	NoReading      = "no reading"
 	StandardLapsed = "standard past due"
+	StandardIdle   = "standard not named"
 	BenchLimits    = "the bench limits"
 )
 
@@ -43,7 +44,7 @@ const level = 0.01
 func Findings(e *calib.Evaluation) []calib.Finding {
 	out := []calib.Finding{} // [] in JSON, not null
 	for _, find := range []func(*calib.Evaluation) []calib.Finding{
-		noSignal, notSeparable, shown, scatter, beyondLimit, odd, lists, lapsed, limited,
+		noSignal, notSeparable, shown, scatter, beyondLimit, odd, lists, lapsed, unnamed, limited,
 	} {
 		out = append(out, find(e)...)
 	}

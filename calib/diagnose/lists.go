@@ -31,6 +31,25 @@ func lists(e *calib.Evaluation) []calib.Finding {
 	return out
 }
 
+// unnamed are the standards that the plan lists and no quantity comes from.
+func unnamed(e *calib.Evaluation) []calib.Finding {
+	used := map[string]bool{}
+	for _, s := range e.StandardsUsed() {
+		used[s.Name] = true
+	}
+	var idle []string
+	for _, s := range e.Plan.Standards {
+		if !used[s.Name] {
+			idle = append(idle, s.Name)
+		}
+	}
+	if len(idle) == 0 {
+		return nil
+	}
+	return one(StandardIdle, `name it where a value comes from it: standard = "…" in the quantity's table.`,
+		"the plan lists %s, but no quantity names it: the result is not traced to it.", calib.List(idle))
+}
+
 // lapsed are the standards used that were past due on the day of the measurements.
 func lapsed(e *calib.Evaluation) []calib.Finding {
 	var out []calib.Finding

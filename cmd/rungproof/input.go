@@ -1,12 +1,15 @@
 package main
 
 import (
+	"bytes"
 	"errors"
 	"fmt"
 	"io"
 	"io/fs"
 	"os"
+	"strings"
 
+	"rungproof/calib/fault"
 	"rungproof/calib/plan"
 	"rungproof/calib/reading"
 )
@@ -44,7 +47,18 @@ func (s *streams) plan(name string) (*plan.Plan, error) {
 	if err != nil {
 		return nil, err
 	}
+	if looksLikeReadings(b) {
+		return nil, fault.List{{File: called, Line: 1, What: "these look like readings, where the PLAN is due",
+			Hints: []string{"the plan comes first: rungproof judge plan.toml bench.csv"}}}
+	}
 	return plan.Parse(called, b)
+}
+
+// looksLikeReadings tells whether a file begins with the header of readings.
+func looksLikeReadings(b []byte) bool {
+	first, _, _ := bytes.Cut(bytes.TrimPrefix(b, []byte("\ufeff")), []byte("\n"))
+	line := strings.ToLower(string(first))
+	return strings.HasPrefix(line, "step,") || strings.HasPrefix(line, "step;") || strings.HasPrefix(line, "step\t")
 }
 
 func (s *streams) readings(name string, p *plan.Plan) (*reading.Set, error) {
