@@ -96,6 +96,12 @@ func (v *TrendView) sentences() []string {
 	if a := v.Advice; a != nil {
 		out = append(out, fmt.Sprintf("Next calibration: %s.", a.Due.Format(time.DateOnly))+" "+a.Text)
 	}
+	if a := v.Advice; a != nil {
+		if p, ok := v.Trend.At(a.Due); ok {
+			out = append(out, fmt.Sprintf("A calibration on that day should find an error between %s and %s (control limits, 99.73 %%).",
+				uncertainSigned(p.ControlLow, v.Unit), uncertainSigned(p.ControlHigh, v.Unit)))
+		}
+	}
 	if math.IsNaN(v.Limit) {
 		out = append(out, "The stored plan limits nothing here (or none is stored): no date can be given.")
 	}

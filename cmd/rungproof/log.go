@@ -207,6 +207,11 @@ func logList(s *streams) *cobra.Command {
 				if err != nil {
 					return err
 				}
+				if len(entries) == 0 && filter.Serial != "" {
+					if all, err := store.List(ctx, ledger.Filter{Serial: filter.Serial}); err == nil && len(all) == 0 {
+						return unknownSerial(ctx, store, filter.Serial)
+					}
+				}
 				if asJSON {
 					return s.write(report.LogJSON(entries))
 				}
