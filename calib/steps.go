@@ -83,6 +83,10 @@ func (s *StepResult) settleRisk() {
 	case decision.Pass, decision.ConditionalPass:
 		s.Risk = number(decision.Accepting(float64(s.Error), s.u(), float64(s.Limit)))
 	default:
+		if math.Abs(float64(s.Error)) <= float64(s.Limit) { // rejected for something else than this error
+			s.Risk = number(math.NaN())
+			return
+		}
 		s.Risk = number(decision.Rejecting(float64(s.Error), s.u(), float64(s.Limit)))
 	}
 }
