@@ -7,6 +7,7 @@ import (
 
 	"rungproof/calib"
 	"rungproof/calib/diagnose"
+	"rungproof/calib/plan"
 	"rungproof/report"
 )
 
@@ -22,11 +23,7 @@ that the plan cannot tell offset from series resistance, and what to add.`,
 		Example: "  rungproof expect plan.toml",
 		Args:    exactly("PLAN"),
 		RunE: func(_ *cobra.Command, args []string) error {
-			p, err := s.plan(args[0])
-			if err != nil {
-				return err
-			}
-			x, err := calib.Expect(p)
+			p, x, err := s.expectation(args[0])
 			if err != nil {
 				return err
 			}
@@ -40,6 +37,16 @@ that the plan cannot tell offset from series resistance, and what to add.`,
 	}
 	c.Flags().BoolVar(&asJSON, "json", false, "write JSON instead of tables")
 	return c
+}
+
+// expectation reads a plan and predicts what it will show.
+func (s *streams) expectation(file string) (*plan.Plan, *calib.Expectation, error) {
+	p, err := s.plan(file)
+	if err != nil {
+		return nil, nil, err
+	}
+	x, err := calib.Expect(p)
+	return p, x, err
 }
 
 // write passes on what was made, or the error of making it.

@@ -6,7 +6,6 @@ import (
 
 	"github.com/spf13/cobra"
 
-	"rungproof/calib"
 	"rungproof/calib/plan"
 	"rungproof/calib/reading"
 )
@@ -22,11 +21,7 @@ which checks the settings against the plan.`,
 		Example: "  rungproof sheet plan.toml > bench.csv",
 		Args:    exactly("PLAN"),
 		RunE: func(_ *cobra.Command, args []string) error {
-			p, err := s.plan(args[0])
-			if err != nil {
-				return err
-			}
-			x, err := calib.Expect(p)
+			p, x, err := s.expectation(args[0])
 			if err != nil {
 				return err
 			}
